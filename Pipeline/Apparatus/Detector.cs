@@ -1,0 +1,29 @@
+using Pipeline.Quantities;
+
+namespace Pipeline.Apparatus;
+
+/// <summary>What the detector records.</summary>
+public enum DetectorKind
+{
+    /// <summary>Photon counts in each sample.</summary>
+    Counting,
+    /// <summary>Volts.</summary>
+    Analog,
+}
+
+/// <summary>Photons to recorded signal.</summary>
+public sealed record Detector
+{
+    public required DetectorKind Kind { get; init; }
+    /// <summary>Detected counts (or photo-electrons) for each photon that a molecule scatters: solid angle, optics, filter band and
+    /// quantum efficiency together; in (0, 1].</summary>
+    public required Measured Efficiency { get; init => field = Guard.Share(value); }
+    /// <summary>Non-paralysable dead time, s.</summary>
+    public Measured DeadTime { get; init => field = Guard.NotNegative(value); }
+    /// <summary>Volt-seconds for each photo-electron; analog only, then required.</summary>
+    public Measured? VoltSecondPerElectron { get; init => field = value is { } g ? Guard.Positive(g) : null; }
+    /// <summary>Reading of the probe monitor without light, V.</summary>
+    public Measured ProbeMonitorZero { get; init; }
+    /// <summary>Reading of the ablation monitor without a pulse, V.</summary>
+    public Measured AblationMonitorZero { get; init; }
+}

@@ -1,0 +1,31 @@
+using Pipeline.Quantities;
+
+namespace Pipeline.Apparatus;
+
+/// <summary>Shape of the probe light along the beam.</summary>
+public enum ProbeShape
+{
+    /// <summary>Constant over its full width, zero outside.</summary>
+    TopHat,
+    /// <summary>Intensity exp(-2 z^2/w^2), w the 1/e^2 radius.</summary>
+    Gaussian,
+}
+
+/// <summary>The probe laser where the beam crosses it.</summary>
+public sealed record Probe
+{
+    public ProbeShape Shape { get; init; } = ProbeShape.TopHat;
+    /// <summary>Full width of a top hat, or 1/e^2 radius of a Gaussian, m.</summary>
+    public required Measured Width { get; init => field = Guard.Positive(value); }
+    /// <summary>Angle between laser propagation and molecular velocity, rad.</summary>
+    public Measured Angle { get; init; } = new(Math.PI / 2);
+    /// <summary>Peak saturation parameter; null where <see cref="ScatteringRate"/> is given instead.</summary>
+    public Measured? Saturation { get; init => field = value is { } s ? Guard.Positive(s) : null; }
+    /// <summary>Peak scattering rate on resonance, 1/s; null where <see cref="Saturation"/> is given instead.</summary>
+    public Measured? ScatteringRate { get; init => field = value is { } r ? Guard.Positive(r) : null; }
+    /// <summary>Detuning of the laser from the line centroid, Hz.</summary>
+    public Measured Detuning { get; init; }
+    /// <summary>Rms width of all that spreads the detuning between molecules or shots, apart from their speed along the beam:
+    /// laser jitter and transverse Doppler shifts, Hz.</summary>
+    public Measured DetuningSpread { get; init => field = Guard.NotNegative(value); }
+}

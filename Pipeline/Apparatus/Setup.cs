@@ -1,0 +1,50 @@
+using Pipeline.Quantities;
+
+namespace Pipeline.Apparatus;
+
+/// <summary>How molecules travel in one condition.</summary>
+public enum FlightKind
+{
+    Free,
+    Decelerated,
+    NotUnique,
+}
+
+/// <summary>Everything the analysis knows of the apparatus; plain facts, validated.</summary>
+public sealed record Setup
+{
+    public required Species Species { get; init; }
+    public required Beamline Beamline { get; init; }
+    public required Probe Probe { get; init; }
+    public required Detector Detector { get; init; }
+    public required EmissionProfile Emission { get; init; }
+    /// <summary>Flight by condition name.</summary>
+    public required IReadOnlyDictionary<string, FlightKind> Conditions { get; init; }
+    /// <summary>Capture velocity of the user's trap, m/s.</summary>
+    public required double CaptureSpeed { get; init => field = Guard.Positive(value); }
+
+    /// <summary>The flight map of a condition.</summary>
+    /// <exception cref="DataFaultException">The condition is unknown, or needs a decelerator that is not described.</exception>
+    public FlightMap FlightFor(string condition)
+    {
+        if (!Conditions.TryGetValue(condition, out FlightKind kind))
+            throw new DataFaultException($"condition \"{condition}\"", "no flight stated for it",
+                $"one of {string.Join(", ", Conditions.Keys)}", "add it under [conditions] in apparatus.toml");
+        return kind switch
+        {
+            FlightKind.Free => new FreeFlight(Beamline.SourceToProbe.Value),
+            FlightKind.Decelerated => Decelerated(condition),
+            _ => new AmbiguousFlight(),
+        };
+    }
+
+    DeceleratedFlight Decelerated(string condition)
+    {
+        Decelerator section = Beamline.Decelerator
+            ?? throw new DataFaultException($"condition \"{condition}\"", "flight \"decelerator\" without a [decelerator] table",
+                "entrance, length, stages and energy per stage", "describe the decelerator in apparatus.toml");
+        double exitToProbe = Beamline.SourceToProbe.Value - section.SourceToEntrance.Value - section.Length.Value;
+        return new DeceleratedFlight(section.SourceToEntrance.Value, section.Length.Value, exitToProbe, section.Stages,
+            section.EnergyPerStage.Value, Species.Mass.Value);
+    }
+}

@@ -1,0 +1,18 @@
+namespace Pipeline.Reduction;
+
+/// <summary>How shots are checked and binned.</summary>
+public sealed record ReductionSettings
+{
+    /// <summary>Shots of one condition and kind that are summed together; the unit of resampling.</summary>
+    public int ShotsPerBlock { get; init; } = 1;
+    /// <summary>Bin width as a share of the time after the trigger.</summary>
+    public double RelativeBinWidth { get; init; } = 0.01;
+    /// <summary>No bin is narrower, s.</summary>
+    public double ShortestBinSeconds { get; init; } = 20e-6;
+    /// <summary>A shot whose laser reads more than this from the run's median is cut, Hz; null: not checked.</summary>
+    public double? UnlockedBeyondHz { get; init; }
+    /// <summary>Cut shots whose record is one constant value.</summary>
+    public bool CutFlatRecords { get; init; } = true;
+    /// <summary>Cut shots with samples at or beyond the range of the digitiser.</summary>
+    public bool CutSaturated { get; init; } = true;
+}
