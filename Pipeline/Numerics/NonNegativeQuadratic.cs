@@ -1,0 +1,110 @@
+namespace Pipeline.Numerics;
+
+/// <summary>Minimises x^T H x / 2 - g^T x with some variables bounded below by zero.</summary>
+/// <remarks>Active set on the normal equations, after Lawson and Hanson (1974) in the form of Bro and de Jong
+/// (J. Chemometrics 11, 393, 1997). A start from the solution of a similar problem needs few steps.</remarks>
+sealed class NonNegativeQuadratic
+{
+    readonly int _n;
+    readonly int _bounded;
+    readonly double[] _work;
+    readonly double[] _trial;
+    readonly int[] _index;
+
+    /// <param name="n">Number of variables.</param>
+    /// <param name="bounded">The first so many are bounded below by zero; the rest are free.</param>
+    public NonNegativeQuadratic(int n, int bounded)
+    {
+        if (bounded < 0 || bounded > n) throw new ArgumentOutOfRangeException(nameof(bounded), bounded, $"must lie in [0, {n}]");
+        (_n, _bounded) = (n, bounded);
+        _work = new double[n * n];
+        _trial = new double[n];
+        _index = new int[n];
+        X = new double[n];
+        Passive = new bool[n];
+    }
+
+    /// <summary>[n] the solution; on entry to <see cref="Solve"/> the start.</summary>
+    public double[] X { get; }
+
+    /// <summary>[n] which variables are away from their bound.</summary>
+    public bool[] Passive { get; }
+
+    /// <summary>Copies the state of a solved problem of the same size, as a start.</summary>
+    public void StartFrom(NonNegativeQuadratic other)
+    {
+        other.X.CopyTo(X, 0);
+        other.Passive.CopyTo(Passive, 0);
+    }
+
+    /// <param name="h">[n * n] symmetric, row-major, positive definite.</param>
+    /// <param name="g">[n].</param>
+    /// <returns>False where the steps ran out or H is singular to working precision; X is then feasible but not optimal.</returns>
+    public bool Solve(double[] h, ReadOnlySpan<double> g)
+    {
+        for (int i = _bounded; i < _n; i++) Passive[i] = true;
+        double scale = 0;
+        foreach (double v in g) scale = Math.Max(scale, Math.Abs(v));
+        double tolerance = 1e-10 * scale;
+        for (int outer = 0; outer < 4 * _n + 10; outer++)
+        {
+            if (!MoveToFeasible(h, g)) return false;
+            int entering = MostPromising(h, g, tolerance);
+            if (entering < 0) return true;
+            Passive[entering] = true;
+        }
+        return false;
+    }
+
+    /// <summary>Solves on the passive set, and takes variables out until all bounded ones are positive.</summary>
+    bool MoveToFeasible(double[] h, ReadOnlySpan<double> g)
+    {
+        for (int inner = 0; inner <= _n + 1; inner++)
+        {
+            int m = SolvePassive(h, g);
+            if (m < 0) return false;
+            double step = 1;
+            for (int k = 0; k < m; k++)
+            {
+                int i = _index[k];
+                if (i < _bounded && _trial[k] <= 0) step = Math.Min(step, X[i] <= 0 ? 0 : X[i] / (X[i] - _trial[k]));
+            }
+            for (int i = 0; i < _n; i++) if (!Passive[i]) X[i] = 0;
+            for (int k = 0; k < m; k++) X[_index[k]] += step * (_trial[k] - X[_index[k]]);
+            if (step >= 1) return true;
+            for (int k = 0; k < m; k++)
+            {
+                int i = _index[k];
+                if (i < _bounded && _trial[k] <= 0 && X[i] <= 1e-14 * Math.Abs(_trial[k]) + 1e-300) (Passive[i], X[i]) = (false, 0);
+            }
+        }
+        return false;
+    }
+
+    int SolvePassive(double[] h, ReadOnlySpan<double> g)
+    {
+        int m = 0;
+        for (int i = 0; i < _n; i++) if (Passive[i]) _index[m++] = i;
+        for (int a = 0; a < m; a++)
+        {
+            int row = _index[a] * _n;
+            for (int b = 0; b <= a; b++) _work[a * m + b] = h[row + _index[b]];
+            _trial[a] = g[_index[a]];
+        }
+        if (!Cholesky.Factor(_work, m, m)) return -1;
+        Cholesky.Solve(_work, m, m, _trial);
+        return m;
+    }
+
+    int MostPromising(double[] h, ReadOnlySpan<double> g, double tolerance)
+    {
+        (int best, double largest) = (-1, tolerance);
+        for (int i = 0; i < _bounded; i++)
+        {
+            if (Passive[i]) continue;
+            double descent = g[i] - Cholesky.Dot(h.AsSpan(i * _n, _n), X);
+            if (descent > largest) (best, largest) = (i, descent);
+        }
+        return best;
+    }
+}
