@@ -7,7 +7,7 @@ public sealed record Beamline
 {
     /// <summary>Emission point to the middle of the probe, m.</summary>
     public required Measured SourceToProbe { get; init => field = Guard.Positive(value); }
-    /// <summary>True trigger minus recorded trigger, s: added to every recorded time.</summary>
+    /// <summary>Added to a recorded time it gives the time after the ablation pulse, s.</summary>
     public Measured TriggerOffset { get; init; }
     /// <summary>Half width of the acceptance at the probe, horizontal, m; null: not limited.</summary>
     public double? AcceptanceHalfWidthX { get; init => field = value is { } a ? Guard.Positive(a) : null; }

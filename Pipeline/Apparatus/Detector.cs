@@ -26,4 +26,8 @@ public sealed record Detector
     public Measured ProbeMonitorZero { get; init; }
     /// <summary>Reading of the ablation monitor without a pulse, V.</summary>
     public Measured AblationMonitorZero { get; init; }
+    /// <summary>Relative noise of one reading of the probe monitor: how far it is from the light that scatters.</summary>
+    public double ProbeMonitorNoise { get; init => field = Guard.NotNegative(value); }
+    /// <summary>Relative noise of one reading of the ablation monitor: how far it is from the molecules and the flash it stands for.</summary>
+    public double AblationMonitorNoise { get; init => field = Guard.NotNegative(value); }
 }

@@ -20,6 +20,6 @@ public abstract record EmissionProfile
     /// <summary>Integral of <see cref="CumulativeAt"/> from minus infinity to <paramref name="time"/>, s.</summary>
     public abstract double IntegratedCumulativeAt(double time);
 
-    /// <summary>Smallest time scale over which the pulse changes, s; 0 for an instant.</summary>
-    public abstract double Sharpness { get; }
+    /// <summary>Times (s after the trigger) before and after which less than 1e-15 of the molecules leave.</summary>
+    public abstract (double Low, double High) Support { get; }
 }

@@ -8,7 +8,7 @@ public sealed record InstantEmission : EmissionProfile
 {
     public override string Name => "instant";
     public override double MeanTime => Delay.Value;
-    public override double Sharpness => 0;
+    public override (double Low, double High) Support => (Delay.Value, Delay.Value);
     public override double CumulativeAt(double time) => time >= Delay.Value ? 1 : 0;
     public override double IntegratedCumulativeAt(double time) => Math.Max(0, time - Delay.Value);
 }
@@ -20,7 +20,7 @@ public sealed record GaussianEmission : EmissionProfile
     public required Measured Width { get; init => field = Guard.Positive(value); }
     public override string Name => "gaussian";
     public override double MeanTime => Delay.Value;
-    public override double Sharpness => Width.Value;
+    public override (double Low, double High) Support => (Delay.Value - 8 * Width.Value, Delay.Value + 8 * Width.Value);
     public override double CumulativeAt(double time) => NormalPulse.Cumulative(time - Delay.Value, Width.Value);
     public override double IntegratedCumulativeAt(double time) => NormalPulse.Integrated(time - Delay.Value, Width.Value);
 }
@@ -32,7 +32,7 @@ public sealed record ExponentialEmission : EmissionProfile
     public required Measured Tail { get; init => field = Guard.Positive(value); }
     public override string Name => "exponential";
     public override double MeanTime => Delay.Value + Tail.Value;
-    public override double Sharpness => Tail.Value;
+    public override (double Low, double High) Support => (Delay.Value, Delay.Value + 35 * Tail.Value);
 
     public override double CumulativeAt(double time)
     {
@@ -54,7 +54,8 @@ public sealed record ExponentialGaussianEmission : EmissionProfile
     public required Measured Tail { get; init => field = Guard.Positive(value); }
     public override string Name => "exponential-gaussian";
     public override double MeanTime => Delay.Value + Tail.Value;
-    public override double Sharpness => Width.Value;
+    public override (double Low, double High) Support =>
+        (Delay.Value - 8 * Width.Value, Delay.Value + 8 * Width.Value + 35 * Tail.Value);
 
     /// <summary>The pulse itself, 1/s.</summary>
     public double DensityAt(double time)

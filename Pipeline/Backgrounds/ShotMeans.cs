@@ -1,0 +1,57 @@
+using Pipeline.Apparatus;
+using Pipeline.Reduction;
+
+namespace Pipeline.Backgrounds;
+
+/// <summary>The totals of one kind of shot, in counts or photo-electron equivalents.</summary>
+sealed record ShotMeans
+{
+    public required double Shots { get; init; }
+    /// <summary>[bins] summed over shots, as recorded.</summary>
+    public required double[] Total { get; init; }
+    /// <summary>[bins] share that the dead time lets through.</summary>
+    public required double[] Live { get; init; }
+    /// <summary>[bins] variance of <see cref="Total"/>, from Poisson counts or from the scatter of blocks.</summary>
+    public required double[] Variance { get; init; }
+    /// <summary>Mean reading above zero, V; NaN without monitor.</summary>
+    public required double ProbeMonitor { get; init; }
+    public required double AblationMonitor { get; init; }
+
+    /// <summary>[bins] true counts a shot.</summary>
+    public double PerShot(int bin) => Total[bin] / (Live[bin] * Shots);
+
+    /// <summary>[bins] variance of <see cref="PerShot"/>.</summary>
+    public double PerShotVariance(int bin) => Variance[bin] / (Live[bin] * Shots * Live[bin] * Shots);
+
+    public static ShotMeans? Of(BinnedRun run, string condition, ShotKind kind, Detector detector)
+    {
+        if (run.Find(condition, kind) is not { } group || !(group.Shots > 0)) return null;
+        bool counting = run.DetectorKind == DetectorKind.Counting;
+        double unit = counting ? 1 : run.Axis.TickSeconds / detector.VoltSecondPerElectron!.Value.Value;
+        double[] total = [.. Enumerable.Range(0, run.Axis.Bins).Select(i => unit * group.BlockSums.Sum(b => b[i]))];
+        return new ShotMeans
+        {
+            Shots = group.Shots,
+            Total = total,
+            Live = counting ? DeadTime.Live(group, run.Axis, detector.DeadTime.Value) : [.. total.Select(_ => 1.0)],
+            Variance = counting ? total : BlockScatter(group, unit),
+            ProbeMonitor = group.BlockProbeMonitor.Sum() / group.Shots,
+            AblationMonitor = group.BlockAblationMonitor.Sum() / group.Shots,
+        };
+    }
+
+    /// <summary>Variance of the summed bins from the scatter of blocks about their mean rate.</summary>
+    static double[] BlockScatter(ShotGroup group, double unit)
+    {
+        int blocks = group.BlockShots.Length;
+        double shots = group.Shots;
+        return [.. Enumerable.Range(0, group.BlockSums[0].Length).Select(i =>
+        {
+            double mean = group.BlockSums.Sum(b => b[i]) / shots;
+            double squares = Enumerable.Range(0, blocks).Sum(b => Square(group.BlockSums[b][i] - mean * group.BlockShots[b]));
+            return blocks > 1 ? unit * unit * squares * blocks / (blocks - 1) : double.PositiveInfinity;
+        })];
+    }
+
+    static double Square(double x) => x * x;
+}

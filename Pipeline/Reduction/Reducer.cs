@@ -1,0 +1,141 @@
+using System.Globalization;
+using Pipeline.Apparatus;
+
+namespace Pipeline.Reduction;
+
+/// <summary>Shots to a <see cref="BinnedRun"/>: checks every shot on its housekeeping and sums the rest.</summary>
+public static class Reducer
+{
+    /// <summary>Expected steady counts in an empty record above which an empty record means that there was no trigger.</summary>
+    const double PlausibleCounts = 20;
+
+    /// <param name="shape">The record.</param>
+    /// <param name="allShots">Housekeeping of every shot of the file, for medians.</param>
+    /// <param name="blocks">The shots; enumerated once.</param>
+    /// <param name="detector">For the zeros of the monitors.</param>
+    /// <param name="settings">Checks and bins.</param>
+    public static BinnedRun Reduce(
+        RecordShape shape, IReadOnlyList<ShotInfo> allShots, IEnumerable<ShotBlock> blocks, Detector detector, ReductionSettings settings)
+    {
+        SignalAxis axis = AxisDesign.For(shape, settings.RelativeBinWidth, settings.ShortestBinSeconds);
+        var pass = new ReductionPass(shape, axis, detector, settings, MedianDetuning(allShots));
+        foreach (ShotBlock block in blocks) pass.Add(block);
+        return pass.Finish(PlausibleCounts);
+    }
+
+    static double MedianDetuning(IReadOnlyList<ShotInfo> shots)
+    {
+        double[] readbacks = [.. shots.Select(s => s.DetuningReadback).Where(double.IsFinite).Order()];
+        return readbacks.Length == 0 ? double.NaN : readbacks[readbacks.Length / 2];
+    }
+}
+
+/// <summary>The state of one pass over the shots.</summary>
+sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector, ReductionSettings settings, double medianDetuning)
+{
+    readonly IReadOnlyList<IShotCheck> _checks = ShotChecks.For(settings, shape);
+    readonly Dictionary<(string, ShotKind), GroupSums> _groups = [];
+    readonly SortedDictionary<string, List<long>> _cuts = new(StringComparer.Ordinal);
+    readonly List<ShotInfo> _empty = [];
+    readonly List<string> _remarks = [];
+    int _read;
+
+    public void Add(ShotBlock block)
+    {
+        if (block.Samples != shape.Samples)
+            throw new ArgumentOutOfRangeException(nameof(block), block.Samples, $"must have {shape.Samples} samples a shot");
+        for (int k = 0; k < block.Shots.Count; k++)
+        {
+            _read++;
+            if (block.Codes is { } codes) AddShot(block.Shots[k], codes.AsSpan(k * shape.Samples, shape.Samples));
+            else AddShot(block.Shots[k], block.Values.AsSpan(k * shape.Samples, shape.Samples));
+        }
+    }
+
+    void AddShot(ShotInfo info, ReadOnlySpan<int> codes)
+    {
+        int low = System.Numerics.Tensors.TensorPrimitives.Min(codes), high = System.Numerics.Tensors.TensorPrimitives.Max(codes);
+        if (Kept(info, low, high)) Group(info).Add(codes, Probe(info), Ablation(info));
+    }
+
+    void AddShot(ShotInfo info, ReadOnlySpan<double> values)
+    {
+        double low = System.Numerics.Tensors.TensorPrimitives.Min(values), high = System.Numerics.Tensors.TensorPrimitives.Max(values);
+        if (Kept(info, low, high)) Group(info).Add(values, Probe(info), Ablation(info));
+    }
+
+    bool Kept(ShotInfo info, double low, double high)
+    {
+        if (shape.Kind == DetectorKind.Counting && settings.CutFlatRecords && low == 0 && high == 0)
+        {
+            _empty.Add(info);
+            return false;
+        }
+        var view = new ShotView(info, low, high, medianDetuning);
+        foreach (IShotCheck check in _checks)
+        {
+            if (!check.Cuts(view)) continue;
+            Cut(check.Reason, info.Number);
+            return false;
+        }
+        return true;
+    }
+
+    void Cut(string reason, long number)
+    {
+        if (!_cuts.TryGetValue(reason, out List<long>? numbers)) _cuts[reason] = numbers = [];
+        numbers.Add(number);
+    }
+
+    GroupSums Group(ShotInfo info)
+    {
+        if (!_groups.TryGetValue((info.Condition, info.Kind), out GroupSums? sums))
+            _groups[(info.Condition, info.Kind)] = sums = new GroupSums(info.Condition, info.Kind, shape, axis, settings.ShotsPerBlock);
+        return sums;
+    }
+
+    double Probe(ShotInfo info) => info.ProbeMonitor - detector.ProbeMonitorZero.Value;
+    double Ablation(ShotInfo info) => info.AblationMonitor - detector.AblationMonitorZero.Value;
+
+    public BinnedRun Finish(double plausibleCounts)
+    {
+        JudgeEmptyRecords(plausibleCounts);
+        return new BinnedRun
+        {
+            DetectorKind = shape.Kind,
+            Axis = axis,
+            Groups = [.. _groups.Values.Select(g => g.ToGroup())
+                .OrderBy(g => g.Condition, StringComparer.Ordinal).ThenBy(g => g.Kind)],
+            ShotsRead = _read,
+            Cuts = [.. _cuts.Select(c => new ShotCut(c.Key, c.Value))],
+            Remarks = _remarks,
+        };
+    }
+
+    /// <summary>A counting record without a single count is a missing trigger only where steady light and dark counts would have
+    /// shown; else it is a legitimate zero, and cutting it would bias the mean.</summary>
+    void JudgeEmptyRecords(double plausibleCounts)
+    {
+        foreach (var kind in _empty.GroupBy(s => (s.Condition, s.Kind)))
+        {
+            double expected = _groups.TryGetValue(kind.Key, out GroupSums? sums) ? SteadyCounts(sums.ToGroup()) : 0;
+            if (expected >= plausibleCounts) foreach (ShotInfo shot in kind) Cut("missing trigger", shot.Number);
+            else KeepEmpty([.. kind], expected);
+        }
+    }
+
+    void KeepEmpty(IReadOnlyList<ShotInfo> shots, double expected)
+    {
+        int[] nothing = new int[shape.Samples];
+        foreach (ShotInfo shot in shots) Group(shot).Add(nothing, Probe(shot), Ablation(shot));
+        _remarks.Add(string.Create(CultureInfo.InvariantCulture,
+            $"{shots.Count} records without a single count were kept: only {expected:F1} steady counts are expected in one"));
+    }
+
+    /// <summary>Counts a record would hold if all of it were like the time before the trigger.</summary>
+    double SteadyCounts(ShotGroup group)
+    {
+        int trigger = Math.Clamp((int)(-shape.OriginSeconds / shape.TickSeconds), 0, shape.Samples);
+        return trigger == 0 ? 0 : group.FullSum.Take(trigger).Sum() / trigger * shape.Samples / group.Shots;
+    }
+}
