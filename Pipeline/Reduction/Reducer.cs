@@ -18,22 +18,22 @@ public static class Reducer
         RecordShape shape, IReadOnlyList<ShotInfo> allShots, IEnumerable<ShotBlock> blocks, Detector detector, ReductionSettings settings)
     {
         SignalAxis axis = AxisDesign.For(shape, settings.RelativeBinWidth, settings.ShortestBinSeconds);
-        var pass = new ReductionPass(shape, axis, detector, settings, MedianDetuning(allShots));
+        var pass = new ReductionPass(shape, axis, detector, settings, allShots);
         foreach (ShotBlock block in blocks) pass.Add(block);
         return pass.Finish(PlausibleCounts);
-    }
-
-    static double MedianDetuning(IReadOnlyList<ShotInfo> shots)
-    {
-        double[] readbacks = [.. shots.Select(s => s.DetuningReadback).Where(double.IsFinite).Order()];
-        return readbacks.Length == 0 ? double.NaN : readbacks[readbacks.Length / 2];
     }
 }
 
 /// <summary>The state of one pass over the shots.</summary>
-sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector, ReductionSettings settings, double medianDetuning)
+sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector, ReductionSettings settings, IReadOnlyList<ShotInfo> allShots)
 {
+    /// <summary>Blocks a group should have at least: fewer tell too little of its scatter.</summary>
+    const int FewestBlocks = 12;
+
+
     readonly IReadOnlyList<IShotCheck> _checks = ShotChecks.For(settings, shape);
+    readonly double _medianDetuning = MedianDetuning(allShots);
+    readonly Dictionary<(string, ShotKind), int> _recorded = allShots.CountBy(s => (s.Condition, s.Kind)).ToDictionary();
     readonly Dictionary<(string, ShotKind), GroupSums> _groups = [];
     readonly SortedDictionary<string, List<long>> _cuts = new(StringComparer.Ordinal);
     readonly List<ShotInfo> _empty = [];
@@ -71,7 +71,7 @@ sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector
             _empty.Add(info);
             return false;
         }
-        var view = new ShotView(info, low, high, medianDetuning);
+        var view = new ShotView(info, low, high, _medianDetuning);
         foreach (IShotCheck check in _checks)
         {
             if (!check.Cuts(view)) continue;
@@ -90,8 +90,17 @@ sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector
     GroupSums Group(ShotInfo info)
     {
         if (!_groups.TryGetValue((info.Condition, info.Kind), out GroupSums? sums))
-            _groups[(info.Condition, info.Kind)] = sums = new GroupSums(info.Condition, info.Kind, shape, axis, settings.ShotsPerBlock);
+            _groups[(info.Condition, info.Kind)] = sums = new GroupSums(info.Condition, info.Kind, shape, axis, ShotsPerBlock(info));
         return sums;
+    }
+
+    int ShotsPerBlock(ShotInfo info) =>
+        Math.Clamp(_recorded.GetValueOrDefault((info.Condition, info.Kind)) / FewestBlocks, 1, settings.ShotsPerBlock);
+
+    static double MedianDetuning(IReadOnlyList<ShotInfo> shots)
+    {
+        double[] readbacks = [.. shots.Select(s => s.DetuningReadback).Where(double.IsFinite).Order()];
+        return readbacks.Length == 0 ? double.NaN : readbacks[readbacks.Length / 2];
     }
 
     double Probe(ShotInfo info) => info.ProbeMonitor - detector.ProbeMonitorZero.Value;

@@ -19,6 +19,9 @@ public sealed record VelocityGrid
     public double Step { get; }
     public int Cells { get; }
 
+    /// <summary>Upper end of the grid, m/s.</summary>
+    public double To => Edge(Cells);
+
     /// <summary>Lower edge of a cell; for cell = Cells the upper end, m/s.</summary>
     public double Edge(int cell) => From + cell * Step;
 

@@ -1,0 +1,57 @@
+using Pipeline.Apparatus;
+using Pipeline.Backgrounds;
+using Pipeline.Comparison;
+using Pipeline.Fitting;
+using Pipeline.Predictions;
+using Pipeline.Reduction;
+using Pipeline.Response;
+
+namespace Pipeline.Analysis;
+
+/// <summary>A prediction for one condition.</summary>
+/// <param name="Molecules">Simulated molecules.</param>
+/// <param name="RelativeOnly">Whether only the distribution is predicted.</param>
+public sealed record ConditionPrediction(MoleculeList Molecules, bool RelativeOnly);
+
+/// <summary>The pipeline on one page.</summary>
+public static class RunAnalysis
+{
+    /// <summary>Numerical behaviour of the program: raised whenever the same input may give other numbers.</summary>
+    public const int NumericalVersion = 1;
+
+    /// <summary>Spectra and numbers of every condition.</summary>
+    public static IReadOnlyList<SpectrumOutcome> Fit(BinnedRun run, string mode, Setup setup, AnalysisSettings settings)
+    {
+        if (run.Conditions.Count == 0)
+            throw new DataFaultException("run", "no kept signal shots", "at least one shot with probe and ablation on",
+                "look at the shots that were cut, and at the labels of the layout");
+        return [.. run.Conditions.Select(condition => SpectrumFitter.Fit(run, condition, setup,
+            BackgroundModels.Named(settings.Background), ResponseModes.Named(mode), settings.Fit))];
+    }
+
+    /// <summary>Folded predictions, and the verdict on the run.</summary>
+    public static (IReadOnlyList<ConditionOutcome> Conditions, Verdict Verdict) Compare(
+        IReadOnlyList<SpectrumOutcome> fits, IReadOnlyDictionary<string, ConditionPrediction> predictions, Setup setup, AnalysisSettings settings)
+    {
+        var conditions = new List<ConditionOutcome>();
+        var answers = new List<Answer>();
+        foreach (SpectrumOutcome fit in fits)
+        {
+            if (!predictions.TryGetValue(fit.Signal.Condition, out ConditionPrediction? prediction))
+            {
+                conditions.Add(new ConditionOutcome(fit, null, false));
+                continue;
+            }
+            var both = new ComparisonCase(fit.Signal, Folding(prediction, fit, settings), setup, settings.Fit, settings.Comparison, fit.YieldScatter);
+            conditions.Add(new ConditionOutcome(fit, both.Folded, prediction.RelativeOnly));
+            answers.AddRange(Questions.All.Where(q => !(q.NeedsAbsolute && prediction.RelativeOnly)).Select(q => q.Ask(both)));
+        }
+        return (conditions, Judge.Decide(answers, settings.Comparison.Level, "no prediction belongs to this run"));
+    }
+
+    static Func<Setup, double, FoldedPrediction> Folding(ConditionPrediction prediction, SpectrumOutcome fit, AnalysisSettings settings)
+    {
+        var grid = new VelocityGrid(settings.Fit.VelocityFrom, settings.Fit.VelocityTo, settings.Fit.VelocityStep);
+        return (setup, stretch) => PredictionFold.Fold(prediction.Molecules, setup, fit.Signal.Axis, grid, stretch);
+    }
+}

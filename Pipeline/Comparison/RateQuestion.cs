@@ -1,0 +1,31 @@
+using System.Globalization;
+using Pipeline.Statistics;
+
+namespace Pipeline.Comparison;
+
+/// <summary>Counts of molecules over predicted counts, in the whole window.</summary>
+sealed class RateQuestion : IQuestion
+{
+    public string Name => "rate";
+    public bool NeedsAbsolute => true;
+
+    public Answer Ask(ComparisonCase both)
+    {
+        double predicted = both.Predicted.Sum(), rate = (both.Total.Sum() - both.Background.Sum()) / predicted;
+        double counting = both.DataVariance(Math.Max(rate, 0)).Sum() + both.Causes.Sum(c => Square(c.Sum()));
+        double statistical = Math.Sqrt(counting / Square(predicted) + Square(rate * both.YieldScatter));
+        double simulation = Math.Abs(rate) * Math.Sqrt(both.PredictedVariance.Sum()) / predicted;
+        double systematic = Math.Abs(rate) * Math.Sqrt(both.Nuisances.Sum(n => Square(n.Vector.Sum() / predicted)));
+        double error = Math.Sqrt(Square(statistical) + Square(simulation) + Square(systematic)), matters = both.Settings.RateMatters;
+        return new Answer
+        {
+            Condition = both.Condition, Question = Name, Measured = rate, Predicted = 1, Statistical = statistical,
+            Systematic = systematic, Simulation = simulation, PValue = Tail.NormalTwoSided((rate - 1) / error),
+            WouldHaveShown = Equivalence.Holds(rate - 1, error, matters),
+            Finding = string.Create(CultureInfo.InvariantCulture, $"{rate:F3} ± {error:F3} of the predicted counts"),
+            WhatWouldDecide = Equivalence.WhatWouldDecide(rate - 1, statistical, double.Hypot(systematic, simulation), matters),
+        };
+    }
+
+    static double Square(double x) => x * x;
+}

@@ -1,0 +1,52 @@
+using System.Globalization;
+using MathNet.Numerics.Distributions;
+using MathNet.Numerics.LinearAlgebra;
+using Pipeline.Statistics;
+
+namespace Pipeline.Comparison;
+
+/// <summary>Chi-square of the whole signal at free rate, with the covariance of data, simulation and every common cause.</summary>
+/// <remarks>Merged bins hold 25 predicted counts or more, so the asymptotic distribution serves. "Would have shown" asks for 90 % power
+/// against a stretch of all arrival times by what matters.</remarks>
+sealed class ShapeQuestion : IQuestion
+{
+    const double Power = 0.9;
+
+    public string Name => "shape";
+    public bool NeedsAbsolute => false;
+
+    public Answer Ask(ComparisonCase both)
+    {
+        Vector<double> net = Vector<double>.Build.DenseOfArray([.. both.Total.Zip(both.Background, (t, b) => t - b)]);
+        Vector<double> predicted = Vector<double>.Build.DenseOfArray(both.Predicted);
+        double start = Math.Max(net.Sum() / predicted.Sum(), 0.01);
+        Matrix<double> weight = Covariance(both, start).Inverse();
+        double rate = predicted * weight * net / (predicted * weight * predicted);
+        Vector<double> residual = net - rate * predicted;
+        double chiSquare = residual * weight * residual;
+        int freedom = both.Bins - 1;
+        double seen = SeenStretch(both, weight, predicted, start);
+        double power = Tail.NoncentralChiSquare(ChiSquared.InvCDF(freedom, 1 - both.Settings.Level), freedom, seen);
+        return new Answer
+        {
+            Condition = both.Condition, Question = Name, Measured = chiSquare, Predicted = freedom,
+            Statistical = Math.Sqrt(2.0 * freedom), Systematic = 0, Simulation = 0,
+            PValue = Tail.ChiSquare(chiSquare, freedom), WouldHaveShown = power >= Power,
+            Finding = string.Create(CultureInfo.InvariantCulture, $"chi-square {chiSquare:F1} for {freedom} degrees of freedom at free rate"),
+            WhatWouldDecide = string.Create(CultureInfo.InvariantCulture,
+                $"the chance to see arrivals {100 * both.Settings.TimeMatters:G3} % late is {100 * power:F0} %, {100 * Power:F0} % are asked for"),
+        };
+    }
+
+    static Matrix<double> Covariance(ComparisonCase both, double rate) => Covariances.Of(
+        [.. both.DataVariance(rate).Zip(both.PredictedVariance, (d, s) => d + rate * rate * s)],
+        [.. both.Causes, .. both.Nuisances.Select(n => n.Vector.Select(x => rate * x).ToArray())]);
+
+    /// <summary>Noncentrality of a stretch that matters, with the rate profiled.</summary>
+    static double SeenStretch(ComparisonCase both, Matrix<double> weight, Vector<double> predicted, double rate)
+    {
+        Vector<double> stretch = rate * both.Settings.TimeMatters * Vector<double>.Build.DenseOfArray(both.Stretch);
+        double cross = stretch * weight * predicted;
+        return stretch * weight * stretch - cross * cross / (predicted * weight * predicted);
+    }
+}

@@ -1,0 +1,78 @@
+using Pipeline.Backgrounds;
+using Pipeline.Response;
+
+namespace Pipeline.Fitting;
+
+/// <summary>One estimator on one window: the fit, its replicas, and its answer to every nuisance.</summary>
+sealed class EstimatorRun
+{
+    readonly ISpectrumEstimator _estimator;
+    readonly FitWindow _window;
+    readonly VelocityGrid _grid;
+    readonly FittedSpectrum _fit;
+    readonly double[][] _replicas;
+    readonly (string Name, double[]? Up, double[]? Down)[] _shifted;
+
+    public EstimatorRun(ISpectrumEstimator estimator, FitWindow window, ShiftedResponses responses, Replicas replicas, VelocityGrid grid)
+    {
+        (_estimator, _window, _grid) = (estimator, window, grid);
+        _fit = estimator.Fit(window, responses.Main);
+        _replicas = replicas.Map(w => _fit.Refit(w, responses.Main));
+        _shifted = new (string, double[]?, double[]?)[responses.Pairs.Count];
+        Parallel.For(0, _shifted.Length, k =>
+        {
+            (string name, ResponseMatrix? up, ResponseMatrix? down) = responses.Pairs[k];
+            _shifted[k] = (name, up is null ? null : _fit.Refit(window, up), down is null ? null : _fit.Refit(window, down));
+        });
+    }
+
+    /// <summary>A function of the spectrum with its errors.</summary>
+    public Quantity Quantity(Func<double[], double> of)
+    {
+        double value = of(_fit.Molecules);
+        double statistical = Math.Sqrt(Replicas.Variance([.. _replicas.Select(of)]));
+        return Fitting.Quantity.Of(value, statistical, [.. _shifted.Select(s => new BudgetLine(s.Name, Shift(s.Up, s.Down, of, value)))]);
+    }
+
+    public VelocitySpectrum ToSpectrum(NetSignal signal, string? weak)
+    {
+        Quantity Moment(Func<SpectrumMoments, double> of) => weak is not null
+            ? Fitting.Quantity.NotDetermined(weak) : Quantity(m => of(SpectrumMoments.Of(_grid, m)));
+        return new VelocitySpectrum
+        {
+            Estimator = _estimator.Name,
+            Description = _fit.Description,
+            Grid = _grid,
+            Molecules = _fit.Molecules,
+            Statistical = [.. Enumerable.Range(0, _grid.Cells).Select(c => Math.Sqrt(Replicas.Variance([.. _replicas.Select(r => r[c])])))],
+            Systematic = [.. Enumerable.Range(0, _grid.Cells).Select(c => Math.Sqrt(_shifted.Sum(s => Square(Shift(s.Up, s.Down, m => m[c], _fit.Molecules[c])))))],
+            Refolded = Refolded(signal),
+            Resolution = _fit.Resolution,
+            Deviance = _fit.Deviance,
+            DegreesOfFreedom = _fit.DegreesOfFreedom,
+            Doubt = _fit.Doubt,
+            Number = Quantity(m => m.Sum()),
+            Mean = Moment(m => m.Mean),
+            Spread = Moment(m => m.Spread),
+        };
+    }
+
+    double[] Refolded(NetSignal signal)
+    {
+        double[] refolded = [.. Enumerable.Repeat(double.NaN, signal.Axis.Bins)];
+        for (int i = 0; i < _window.Count; i++)
+            refolded[_window.First + i] = (_fit.Means[i] - _window.Background[i]) / _window.Exposure[i];
+        return refolded;
+    }
+
+    /// <summary>Half the difference of both sides, with half of what they share beside it: an effect that is the same for both signs counts.</summary>
+    static double Shift(double[]? up, double[]? down, Func<double[], double> of, double value)
+    {
+        double plus = (up is null ? down is null ? value : 2 * value - of(down) : of(up)) - value;
+        double minus = (down is null ? 2 * value - of(up!) : of(down)) - value;
+        double odd = 0.5 * (plus - minus), even = 0.5 * (plus + minus);
+        return (odd < 0 ? -1 : 1) * double.Hypot(odd, even);
+    }
+
+    static double Square(double x) => x * x;
+}

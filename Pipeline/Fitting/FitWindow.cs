@@ -1,0 +1,44 @@
+using Pipeline.Backgrounds;
+
+namespace Pipeline.Fitting;
+
+/// <summary>The part of a signal that is fitted, as the solvers want it.</summary>
+sealed class FitWindow
+{
+    /// <param name="signal">The signal.</param>
+    /// <param name="fromSeconds">Bins that begin earlier are left out.</param>
+    /// <param name="toSeconds">Bins that end later are left out; null: none.</param>
+    public FitWindow(NetSignal signal, double fromSeconds, double? toSeconds)
+    {
+        int[] bins = [.. Enumerable.Range(0, signal.Axis.Bins).Where(i =>
+            signal.Axis.EdgeSeconds(i) >= fromSeconds - 1e-12 && signal.Axis.EdgeSeconds(i + 1) <= (toSeconds ?? double.PositiveInfinity) + 1e-12)];
+        if (bins.Length < 5)
+            throw new DataFaultException($"fit window of condition \"{signal.Condition}\"", $"{bins.Length} bins", "at least 5",
+                "correct fit_from and fit_to in night.toml, or record longer");
+        (First, Count) = (bins[0], bins.Length);
+        Total = Part(signal.Total);
+        Exposure = [.. Part(signal.Live).Select(l => l * signal.Shots)];
+        Background = Part(signal.Background);
+        ExtraVariance = Part(signal.BackgroundVariance);
+        TotalVariance = signal.TotalVariance is { } variance ? Part(variance) : null;
+        Causes = [.. signal.Causes.Select(c => Part(c.Vector)).Where(v => v.Any(x => x != 0))];
+    }
+
+    /// <summary>First bin of the axis.</summary>
+    public int First { get; }
+    public int Count { get; }
+    public double[] Total { get; }
+    /// <summary>Shots times live share.</summary>
+    public double[] Exposure { get; }
+    public double[] Background { get; }
+    public double[] ExtraVariance { get; }
+    public double[]? TotalVariance { get; }
+    /// <summary>[causes][bins].</summary>
+    public double[][] Causes { get; }
+
+    /// <summary>Variance of a bin's total where this mean is expected.</summary>
+    public double Variance(int bin, double mean) =>
+        TotalVariance is { } v ? Math.Max(v[bin], 1e-12) + ExtraVariance[bin] : Math.Max(mean, 1e-2) + ExtraVariance[bin];
+
+    double[] Part(double[] whole) => whole[First..(First + Count)];
+}

@@ -1,0 +1,42 @@
+using Pipeline.Response;
+
+namespace Pipeline.Fitting;
+
+/// <summary>A way from signal and response to a spectrum.</summary>
+interface ISpectrumEstimator
+{
+    /// <summary>Name in the configuration.</summary>
+    string Name { get; }
+
+    FittedSpectrum Fit(FitWindow window, ResponseMatrix response);
+}
+
+/// <summary>A fit, and the way to repeat it on data or a response that differ a little.</summary>
+abstract class FittedSpectrum
+{
+    /// <summary>[cells] molecules a shot.</summary>
+    public required double[] Molecules { get; init; }
+    /// <summary>[window bins] expected totals with background and fitted causes.</summary>
+    public required double[] Means { get; init; }
+    public required double Deviance { get; init; }
+    /// <summary>Bins less effective parameters.</summary>
+    public required double DegreesOfFreedom { get; init; }
+    /// <summary>Why the fit is not to be trusted; null where it is.</summary>
+    public string? Doubt { get; init; }
+    /// <summary>What was chosen or found, for the report.</summary>
+    public required string Description { get; init; }
+    /// <summary>[cells][cells] how a true spectrum appears; null where the estimator has none.</summary>
+    public double[][]? Resolution { get; init; }
+
+    /// <summary>Molecules from other data, or another response, with everything chosen as in this fit.</summary>
+    public abstract double[] Refit(FitWindow window, ResponseMatrix response);
+}
+
+/// <summary>Every estimator. To add one, write its file and add its line.</summary>
+static class SpectrumEstimators
+{
+    public static IReadOnlyList<ISpectrumEstimator> All { get; } = [new UnfoldedEstimator(), new ShapeEstimator()];
+
+    public static ISpectrumEstimator Named(string name) =>
+        All.FirstOrDefault(m => m.Name == name) ?? throw new ArgumentOutOfRangeException(nameof(name), name, $"must be one of {string.Join(", ", All.Select(m => m.Name))}");
+}

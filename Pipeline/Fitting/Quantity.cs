@@ -1,0 +1,31 @@
+namespace Pipeline.Fitting;
+
+/// <summary>What one common cause moves a result by, for one of its standard deviations.</summary>
+public sealed record BudgetLine(string Cause, double Shift);
+
+/// <summary>A result with its statistical and systematic parts, or the reason why there is none.</summary>
+public sealed record Quantity
+{
+    Quantity() { }
+
+    /// <summary>NaN where not determined.</summary>
+    public double Value { get; private init; }
+    /// <summary>One standard error from the scatter between blocks of shots.</summary>
+    public double Statistical { get; private init; }
+    /// <summary>One standard error from all common causes, in quadrature.</summary>
+    public double Systematic { get; private init; }
+    public IReadOnlyList<BudgetLine> Budget { get; private init; } = [];
+    /// <summary>Null where the value stands.</summary>
+    public string? NotDeterminedBecause { get; private init; }
+
+    /// <summary>Statistical and systematic in quadrature.</summary>
+    public double Total => double.Hypot(Statistical, Systematic);
+
+    public static Quantity Of(double value, double statistical, IReadOnlyList<BudgetLine> budget) => new()
+    {
+        Value = value, Statistical = statistical, Budget = budget, Systematic = Math.Sqrt(budget.Sum(b => b.Shift * b.Shift)),
+    };
+
+    public static Quantity NotDetermined(string because) =>
+        new() { Value = double.NaN, Statistical = double.NaN, Systematic = double.NaN, NotDeterminedBecause = because };
+}

@@ -1,0 +1,101 @@
+using System.Globalization;
+using Pipeline.Apparatus;
+using Pipeline.Backgrounds;
+using Pipeline.Quantities;
+using Pipeline.Reduction;
+using Pipeline.Response;
+
+namespace Pipeline.Fitting;
+
+/// <summary>One condition of a run, from its sums to spectra and numbers with errors.</summary>
+public static class SpectrumFitter
+{
+    /// <summary>Net signal, in its own standard errors, below which mean and spread are not quoted.</summary>
+    const double ClearSignal = 5;
+
+    public static SpectrumOutcome Fit(
+        BinnedRun run, string condition, Setup setup, IBackgroundModel background, IResponseMode mode, FitSettings settings)
+    {
+        NetSignal signal = background.Subtract(run, condition, setup.Detector);
+        var window = new FitWindow(signal, settings.FromSeconds, settings.ToSeconds);
+        var replicas = new Replicas(run, signal, background, setup.Detector, settings);
+        double yieldScatter = replicas.YieldScatter(window);
+        FlightMap flight = setup.FlightFor(condition);
+        if (flight is AmbiguousFlight) return Ambiguous(signal, flight, setup, yieldScatter);
+        var grid = new VelocityGrid(settings.VelocityFrom, settings.VelocityTo, settings.VelocityStep);
+        Func<Setup, ResponseMatrix> build = s => mode.Build(s, condition, signal.Axis, grid);
+        var responses = new ShiftedResponses(setup, build);
+        string? weak = Weakness(window);
+        var outcomes = SpectrumEstimators.All.OrderBy(e => e.Name == settings.Estimator ? 0 : 1)
+            .Select(e => new EstimatorRun(e, window, responses, replicas, grid)).ToList();
+        return new SpectrumOutcome
+        {
+            Signal = signal,
+            Flight = flight.Name,
+            Spectra = [.. outcomes.Select(o => o.ToSpectrum(signal, weak))],
+            Below = BelowCaptureFinder.Find(window, responses.Main, setup, settings, yieldScatter, outcomes[0]),
+            YieldScatter = yieldScatter,
+            Remarks = [.. signal.Remarks, .. UnseenRemarks(condition, window, responses.Main), .. BlockRemarks(run, condition)],
+        };
+    }
+
+    static SpectrumOutcome Ambiguous(NetSignal signal, FlightMap flight, Setup setup, double yieldScatter)
+    {
+        const string Because = "arrival time has no unique speed in this condition; folded predictions can be compared, a Doppler scan would tell";
+        return new SpectrumOutcome
+        {
+            Signal = signal, Flight = flight.Name, Spectra = [], NotDeterminedBecause = Because,
+            Below = new BelowCapture(setup.CaptureSpeed, double.NaN, null, Because), YieldScatter = yieldScatter, Remarks = signal.Remarks,
+        };
+    }
+
+    static string? Weakness(FitWindow window)
+    {
+        double net = window.Total.Sum() - window.Background.Sum();
+        double error = Math.Sqrt(window.Total.Select((t, i) => window.Variance(i, t)).Sum());
+        return net >= ClearSignal * error ? null : string.Create(CultureInfo.InvariantCulture,
+            $"the net signal is only {net / error:F1} of its standard errors; {ClearSignal} are asked for");
+    }
+
+    static IEnumerable<string> UnseenRemarks(string condition, FitWindow window, ResponseMatrix response)
+    {
+        bool[] blind = new Design(window, response).Blind;
+        int slow = Array.FindIndex(blind, b => !b), fast = Array.FindLastIndex(blind, b => !b);
+        if (slow > 0)
+            yield return string.Create(CultureInfo.InvariantCulture,
+                $"{condition}: molecules below {response.Grid.Edge(slow):F1} m/s come after the fit window and are not counted");
+        if (fast < blind.Length - 1)
+            yield return string.Create(CultureInfo.InvariantCulture,
+                $"{condition}: molecules above {response.Grid.Edge(fast + 1):F1} m/s come before the fit window and are not counted");
+    }
+
+    static IEnumerable<string> BlockRemarks(BinnedRun run, string condition)
+    {
+        foreach (ShotGroup group in run.Groups)
+            if (group.Condition == condition && group.BlockShots.Length == 1)
+                yield return $"{condition}: a single block of {group.Kind} shots; its scatter between shots is not known and not in the errors";
+    }
+}
+
+/// <summary>The response, and the same for every nuisance moved by plus and minus one standard deviation.</summary>
+sealed class ShiftedResponses
+{
+    public ShiftedResponses(Setup setup, Func<Setup, ResponseMatrix> build)
+    {
+        Main = build(setup);
+        IReadOnlyList<Nuisance> nuisances = Nuisances.Of(setup);
+        var pairs = new (string, ResponseMatrix?, ResponseMatrix?)[nuisances.Count];
+        Parallel.For(0, pairs.Length, k => pairs[k] = (nuisances[k].Name, Try(nuisances[k], 1), Try(nuisances[k], -1)));
+        Pairs = pairs;
+
+        // a fact that is uncertain by more than itself cannot be moved that far down: the other side then stands for both
+        ResponseMatrix? Try(Nuisance nuisance, double k)
+        {
+            try { return build(nuisance.Shift(setup, k)); }
+            catch (ArgumentOutOfRangeException) { return null; }
+        }
+    }
+
+    public ResponseMatrix Main { get; }
+    public IReadOnlyList<(string Name, ResponseMatrix? Up, ResponseMatrix? Down)> Pairs { get; }
+}

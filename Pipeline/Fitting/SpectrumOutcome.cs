@@ -1,0 +1,60 @@
+using Pipeline.Backgrounds;
+using Pipeline.Quantities;
+using Pipeline.Response;
+
+namespace Pipeline.Fitting;
+
+/// <summary>What one estimator found.</summary>
+public sealed record VelocitySpectrum
+{
+    public required string Estimator { get; init; }
+    public required string Description { get; init; }
+    public required VelocityGrid Grid { get; init; }
+    /// <summary>[cells] molecules a shot that cross the probe; divide by the step for dN/dv.</summary>
+    public required double[] Molecules { get; init; }
+    /// <summary>[cells] standard error from the scatter between blocks of shots.</summary>
+    public required double[] Statistical { get; init; }
+    /// <summary>[cells] standard error from all common causes.</summary>
+    public required double[] Systematic { get; init; }
+    /// <summary>[bins] the spectrum folded back, molecules only, counts a shot, dead time undone; NaN outside the fit window.</summary>
+    public required double[] Refolded { get; init; }
+    /// <summary>[cells][cells] how a true spectrum appears in <see cref="Molecules"/>; null where the estimator has none.</summary>
+    public double[][]? Resolution { get; init; }
+    public required double Deviance { get; init; }
+    public required double DegreesOfFreedom { get; init; }
+    /// <summary>Why it is not to be trusted; null where it is.</summary>
+    public string? Doubt { get; init; }
+    public required Quantity Number { get; init; }
+    public required Quantity Mean { get; init; }
+    public required Quantity Spread { get; init; }
+}
+
+/// <summary>The number below the capture velocity.</summary>
+/// <param name="CaptureSpeed">m/s.</param>
+/// <param name="Value">Molecules a shot at the maximum of the likelihood; NaN where not determined.</param>
+/// <param name="Interval">With systematics; null where not determined.</param>
+/// <param name="NotDeterminedBecause">Null where the value stands.</param>
+public sealed record BelowCapture(double CaptureSpeed, double Value, Interval? Interval, string? NotDeterminedBecause = null);
+
+/// <summary>All that the fits tell of one condition.</summary>
+public sealed record SpectrumOutcome
+{
+    public required NetSignal Signal { get; init; }
+    /// <summary>Name of the flight map.</summary>
+    public required string Flight { get; init; }
+    /// <summary>The quoted one first; empty where not determined.</summary>
+    public required IReadOnlyList<VelocitySpectrum> Spectra { get; init; }
+    public required BelowCapture Below { get; init; }
+    /// <summary>Why there is no spectrum; null where there is one.</summary>
+    public string? NotDeterminedBecause { get; init; }
+    /// <summary>Standard error of the mean yield beyond counting, relative: shots differ by more than their Poisson noise.</summary>
+    public required double YieldScatter { get; init; }
+    public IReadOnlyList<string> Remarks { get; init; } = [];
+
+    public Quantity Number => Quoted(s => s.Number);
+    public Quantity Mean => Quoted(s => s.Mean);
+    public Quantity Spread => Quoted(s => s.Spread);
+
+    Quantity Quoted(Func<VelocitySpectrum, Quantity> of) =>
+        Spectra.Count > 0 ? of(Spectra[0]) : Quantity.NotDetermined(NotDeterminedBecause ?? "no spectrum");
+}
