@@ -1,4 +1,5 @@
 using Pipeline.Apparatus;
+using Pipeline.Numerics;
 using Pipeline.Reduction;
 
 namespace Pipeline.Backgrounds;
@@ -34,10 +35,20 @@ sealed record ShotMeans
             Shots = group.Shots,
             Total = total,
             Live = counting ? DeadTime.Live(group, run.Axis, detector.DeadTime.Value) : [.. total.Select(_ => 1.0)],
-            Variance = counting ? total : BlockScatter(group, unit),
+            Variance = counting ? PoissonVariance(total, run.Axis) : BlockScatter(group, unit),
             ProbeMonitor = group.BlockProbeMonitor.Sum() / group.Shots,
             AblationMonitor = group.BlockAblationMonitor.Sum() / group.Shots,
         };
+    }
+
+    /// <summary>Of few counts: from the mean rate of the neighbourhood, so that an empty bin is not taken as exactly empty, and a bin that
+    /// fluctuates up does not lose weight for it.</summary>
+    static double[] PoissonVariance(double[] total, SignalAxis axis)
+    {
+        const int Half = 10;
+        double[] width = [.. Enumerable.Range(0, axis.Bins).Select(axis.WidthSeconds)];
+        double[] counts = LocalMean.Of(total, Half), seconds = LocalMean.Of(width, Half);
+        return [.. width.Select((w, i) => w * Math.Max(counts[i], 1.0 / (2 * Half + 1)) / seconds[i])];
     }
 
     /// <summary>Variance of the summed bins from the scatter of blocks about their mean rate.</summary>

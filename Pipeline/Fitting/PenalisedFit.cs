@@ -58,7 +58,7 @@ sealed class PenalisedFit
             Scale(_design.Means(X));
             double[] g = _design.Project(Weights, Net());
             for (int c = 0; c < Direction.Length; c++) g[c] -= Pull * Direction[c];
-            if (!_solver.Solve(Hessian, g)) return;
+            bool solved = _solver.Solve(Hessian, g);
             double next = ObjectiveAt(X);
             for (int half = 0; half < 12 && !(next <= objective * (1 + 1e-12)); half++)
             {
@@ -67,7 +67,7 @@ sealed class PenalisedFit
             }
             bool settled = Math.Abs(objective - next) <= 1e-9 * (1 + Math.Abs(next));
             objective = next;
-            if (!settled) continue;
+            if (!settled || !solved) continue;
             Converged = true;
             break;
         }

@@ -53,14 +53,14 @@ sealed class ShapeProblem
     readonly FitWindow _window;
     readonly VelocityGrid _grid;
     readonly Design _design;
-    readonly double[] _scale;
+    readonly double[]? _variance;
 
     public ShapeProblem(FitWindow window, ResponseMatrix response)
     {
         (_window, _grid, _design) = (window, response.Grid, new Design(window, response));
-        // bins with variance beyond Poisson count as fewer, equivalent counts
-        _scale = [.. window.Total.Select((t, i) => window.TotalVariance is null && window.ExtraVariance[i] == 0
-            ? 1 : Math.Max(t, 1) / window.Variance(i, Math.Max(t, 1)))];
+        // weights come from the neighbourhood: a bin's own count would pull the fit towards its downward fluctuations
+        if (window.TotalVariance is not null || window.ExtraVariance.Any(v => v > 0))
+            _variance = [.. Numerics.LocalMean.Of(window.Total, 5).Select((t, i) => window.Variance(i, Math.Max(t, 0.1)))];
     }
 
     public IEnumerable<double[]> Starts()
@@ -89,8 +89,7 @@ sealed class ShapeProblem
         double top = _grid.Edge(_grid.Cells);
         double[] low = [0, -top, 0.3 * _grid.Step, .. Enumerable.Repeat(-20.0, causes)];
         double[] high = [1e15, 1.5 * top, top, .. Enumerable.Repeat(20.0, causes)];
-        double[] counts = [.. _window.Total.Zip(_scale, (t, s) => t * s)];
-        return PoissonFit.Find(Model, counts, start, low, high, priorFrom: 3);
+        return PoissonFit.Find(Model, _window.Total, start, low, high, priorFrom: 3, _variance);
     }
 
     public double[] Means(double[] x) => _design.Means([.. Molecules(x), .. x[3..]]);
@@ -108,17 +107,12 @@ sealed class ShapeProblem
         int p = x.Length, cells = _grid.Cells;
         var (molecules, byU, byAlpha) = (new double[cells], new double[cells], new double[cells]);
         Fill(x, molecules, byU, byAlpha);
-        Copy(_design.Means([.. molecules, .. x[3..]]), means);
+        _design.Means([.. molecules, .. x[3..]]).CopyTo(means);
         if (slopes.IsEmpty) return;
-        double[][] columns = [Without(With([.. molecules.Select(m => m)])), Without(With(byU)), Without(With(byAlpha)), .. _window.Causes];
+        double[][] columns = [Without(With(molecules)), Without(With(byU)), Without(With(byAlpha)), .. _window.Causes];
         for (int i = 0; i < _window.Count; i++)
             for (int k = 0; k < p; k++)
-                slopes[i * p + k] = _scale[i] * (k == 0 ? columns[0][i] / Math.Max(x[0], 1e-300) : columns[k][i]);
-    }
-
-    void Copy(double[] values, Span<double> target)
-    {
-        for (int i = 0; i < values.Length; i++) target[i] = values[i] * _scale[i];
+                slopes[i * p + k] = k == 0 ? columns[0][i] / Math.Max(x[0], 1e-300) : columns[k][i];
     }
 
     double[] With(double[] molecules) => [.. molecules, .. new double[_window.Causes.Length]];

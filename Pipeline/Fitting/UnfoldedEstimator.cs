@@ -25,7 +25,7 @@ sealed class UnfoldedEstimator : ISpectrumEstimator
         fit.Solver.StartFrom(pilot.Solver);
         fit.Solve();
         double effective = Smoothing.EffectiveParameters(design, fit, out double[][] resolution);
-        return new UnfoldedSpectrum(response, fit, best * unit)
+        return new UnfoldedSpectrum(response, design, fit, best * unit)
         {
             Molecules = fit.X[..design.Cells],
             Means = fit.Means,
@@ -40,24 +40,28 @@ sealed class UnfoldedEstimator : ISpectrumEstimator
 }
 
 /// <summary>An unfolding that can be repeated with the same strength, weights and start.</summary>
-sealed class UnfoldedSpectrum(ResponseMatrix response, PenalisedFit fit, double strength) : FittedSpectrum
+sealed class UnfoldedSpectrum(ResponseMatrix response, Design design, PenalisedFit fit, double strength) : FittedSpectrum
 {
     /// <remarks>For the same response, one round with the weights of the main fit: these come from its means, not from the replica.</remarks>
-    public override double[] Refit(FitWindow window, ResponseMatrix other)
+    public override double[] Refit(FitWindow window, ResponseMatrix other) => ReferenceEquals(other, response) ? Replica(window) : Again(window, other);
+
+    /// <summary>The replica's net counts are brought to the exposure of the main data, whose Hessian is used.</summary>
+    double[] Replica(FitWindow window)
     {
-        var design = new Design(window, other);
-        if (!ReferenceEquals(other, response) || design.Variables != fit.X.Length)
-        {
-            var again = new PenalisedFit(design, Smoothing.Penalty(design, strength));
-            if (design.Variables == fit.X.Length) again.Solver.StartFrom(fit.Solver);
-            else again.StartFlat();
-            again.Solve();
-            return again.X[..design.Cells];
-        }
+        double[] net = [.. window.Total.Select((t, i) => (t - window.Background[i]) * design.Window.Exposure[i] / window.Exposure[i])];
         var solver = new Numerics.NonNegativeQuadratic(design.Variables, design.Cells);
         solver.StartFrom(fit.Solver);
-        double[] net = [.. window.Total.Select((t, i) => t - window.Background[i])];
         solver.Solve(fit.Hessian, design.Project(fit.Weights, net));
         return solver.X[..design.Cells];
+    }
+
+    double[] Again(FitWindow window, ResponseMatrix other)
+    {
+        var moved = new Design(window, other);
+        var again = new PenalisedFit(moved, Smoothing.Penalty(moved, strength));
+        if (moved.Variables == design.Variables) again.Solver.StartFrom(fit.Solver);
+        else again.StartFlat();
+        again.Solve();
+        return again.X[..moved.Cells];
     }
 }

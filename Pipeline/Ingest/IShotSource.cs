@@ -7,6 +7,9 @@ public interface IShotSource : IDisposable
 {
     RecordShape Shape { get; }
 
+    /// <summary>Name of the library that reads, for the provenance.</summary>
+    string Reader { get; }
+
     /// <summary>Every file that the run is read from, the main one first.</summary>
     IReadOnlyList<string> InputFiles { get; }
 

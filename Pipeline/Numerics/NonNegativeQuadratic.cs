@@ -10,6 +10,8 @@ sealed class NonNegativeQuadratic
     readonly double[] _work;
     readonly double[] _trial;
     readonly int[] _index;
+    /// <summary>Variables that rounding put back on their bound the moment they entered: not tried again until another one moves.</summary>
+    readonly bool[] _refused;
 
     /// <param name="n">Number of variables.</param>
     /// <param name="bounded">The first so many are bounded below by zero; the rest are free.</param>
@@ -20,6 +22,7 @@ sealed class NonNegativeQuadratic
         _work = new double[n * n];
         _trial = new double[n];
         _index = new int[n];
+        _refused = new bool[n];
         X = new double[n];
         Passive = new bool[n];
     }
@@ -46,12 +49,16 @@ sealed class NonNegativeQuadratic
         double scale = 0;
         foreach (double v in g) scale = Math.Max(scale, Math.Abs(v));
         double tolerance = 1e-10 * scale;
-        for (int outer = 0; outer < 4 * _n + 10; outer++)
+        Array.Clear(_refused);
+        int entered = -1;
+        for (int outer = 0; outer < 6 * _n + 10; outer++)
         {
             if (!MoveToFeasible(h, g)) return false;
-            int entering = MostPromising(h, g, tolerance);
-            if (entering < 0) return true;
-            Passive[entering] = true;
+            if (entered >= 0 && !Passive[entered]) _refused[entered] = true;
+            else Array.Clear(_refused);
+            entered = MostPromising(h, g, tolerance);
+            if (entered < 0) return true;
+            Passive[entered] = true;
         }
         return false;
     }
@@ -101,7 +108,7 @@ sealed class NonNegativeQuadratic
         (int best, double largest) = (-1, tolerance);
         for (int i = 0; i < _bounded; i++)
         {
-            if (Passive[i]) continue;
+            if (Passive[i] || _refused[i]) continue;
             double descent = g[i] - Cholesky.Dot(h.AsSpan(i * _n, _n), X);
             if (descent > largest) (best, largest) = (i, descent);
         }

@@ -25,7 +25,9 @@ sealed record PoissonFit(double[] Parameters, double Deviance, double[]? Covaria
     /// <param name="low">[p].</param>
     /// <param name="high">[p].</param>
     /// <param name="priorFrom">Parameters from this index on carry a unit normal prior about zero.</param>
-    public static PoissonFit Find(MeanFunction model, double[] counts, double[] start, double[] low, double[] high, int? priorFrom = null)
+    /// <param name="variance">[n] of bins that are not Poisson counts, and then count by their chi-square; null: all are.</param>
+    public static PoissonFit Find(MeanFunction model, double[] counts, double[] start, double[] low, double[] high, int? priorFrom = null,
+        double[]? variance = null)
     {
         int n = counts.Length, p = start.Length, first = priorFrom ?? p;
         var means = new double[n];
@@ -35,7 +37,7 @@ sealed record PoissonFit(double[] Parameters, double Deviance, double[]? Covaria
             model(x, means, j.IsEmpty ? [] : slopes);
             for (int i = 0; i < n; i++)
             {
-                r[i] = PoissonDeviance.Residual(counts[i], Math.Max(means[i], SmallestMean), out double d);
+                r[i] = One(i, out double d);
                 if (!j.IsEmpty) for (int k = 0; k < p; k++) j[i * p + k] = d * slopes[i * p + k];
             }
             for (int k = first; k < p; k++)
@@ -47,21 +49,29 @@ sealed record PoissonFit(double[] Parameters, double Deviance, double[]? Covaria
                 j[row * p + k] = 1;
             }
         }
+        double One(int i, out double slope)
+        {
+            if (variance is null) return PoissonDeviance.Residual(counts[i], Math.Max(means[i], SmallestMean), out slope);
+            slope = 1 / Math.Sqrt(variance[i]);
+            return (means[i] - counts[i]) * slope;
+        }
         LeastSquaresResult fit = LeastSquares.Minimise(Residual, n + p - first, start, low, high);
         model(fit.Parameters, means, slopes);
         double deviance = 0;
-        for (int i = 0; i < n; i++) deviance += PoissonDeviance.Of(counts[i], Math.Max(means[i], SmallestMean));
-        return new PoissonFit(fit.Parameters, deviance, Invert(Information(means, slopes, p, first), p, fit.AtBound), fit.Converged, fit.AtBound);
+        for (int i = 0; i < n; i++) deviance += Square(One(i, out _));
+        double[] weights = [.. means.Select((m, i) => 1 / (variance?[i] ?? Math.Max(m, SmallestMean)))];
+        return new PoissonFit(fit.Parameters, deviance, Invert(Information(weights, slopes, p, first), p, fit.AtBound), fit.Converged, fit.AtBound);
     }
 
-    static double[] Information(double[] means, double[] slopes, int p, int priorFrom)
+    static double Square(double x) => x * x;
+
+    static double[] Information(double[] weights, double[] slopes, int p, int priorFrom)
     {
         var information = new double[p * p];
-        for (int i = 0; i < means.Length; i++)
+        for (int i = 0; i < weights.Length; i++)
         {
-            double weight = 1 / Math.Max(means[i], SmallestMean);
             for (int a = 0; a < p; a++)
-                for (int b = 0; b < p; b++) information[a * p + b] += weight * slopes[i * p + a] * slopes[i * p + b];
+                for (int b = 0; b < p; b++) information[a * p + b] += weights[i] * slopes[i * p + a] * slopes[i * p + b];
         }
         for (int k = priorFrom; k < p; k++) information[k * p + k] += 1;
         return information;

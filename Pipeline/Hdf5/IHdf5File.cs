@@ -1,0 +1,45 @@
+namespace Pipeline.Hdf5;
+
+/// <summary>What the elements of a dataset are.</summary>
+public enum ElementKind
+{
+    Integer,
+    Real,
+    Text,
+    Other,
+}
+
+/// <summary>Shape of a dataset.</summary>
+/// <param name="Dimensions">Lengths, slowest first.</param>
+/// <param name="Elements">What it holds.</param>
+/// <param name="RowsPerChunk">Rows that are stored together; 1 where nothing is chunked.</param>
+public sealed record DatasetShape(IReadOnlyList<long> Dimensions, ElementKind Elements, int RowsPerChunk);
+
+/// <summary>An open HDF5 file, read-only. Every fault names file and path; nothing of the library behind it shows.</summary>
+public interface IHdf5File : IDisposable
+{
+    /// <summary>Name of the library that reads, for the provenance.</summary>
+    string Reader { get; }
+
+    /// <summary>Whether a dataset stands at this path.</summary>
+    bool HasDataset(string path);
+
+    /// <exception cref="DataFaultException">No such dataset, or one that cannot be read safely.</exception>
+    DatasetShape Shape(string path);
+
+    /// <summary>[rows * columns] of a two-dimensional integer dataset.</summary>
+    int[] ReadIntegers(string path, long firstRow, int rows);
+
+    /// <summary>[rows * columns] of a two-dimensional dataset of floating-point numbers.</summary>
+    double[] ReadReals(string path, long firstRow, int rows);
+
+    /// <summary>[n] of a one-dimensional numeric dataset.</summary>
+    double[] ReadNumbers(string path);
+
+    /// <summary>[n] of a one-dimensional dataset of strings; numbers are given as invariant text.</summary>
+    string[] ReadLabels(string path);
+
+    /// <summary>A numeric attribute of a dataset or group.</summary>
+    /// <exception cref="DataFaultException">No such attribute, or not a number.</exception>
+    double ReadNumberAttribute(string path, string attribute);
+}

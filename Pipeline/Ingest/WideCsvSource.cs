@@ -1,0 +1,152 @@
+using System.Globalization;
+using Pipeline.Apparatus;
+using Pipeline.Reduction;
+
+namespace Pipeline.Ingest;
+
+/// <summary>CSV with one row a time and one column a shot. The file is read once for each block of shots that fits in memory.</summary>
+sealed class WideCsvSource : IShotSource
+{
+    /// <summary>Samples held at a time; 128 MB as 32-bit integers.</summary>
+    const int DefaultBudget = 32_000_000;
+    readonly string _path, _name;
+    readonly WideCsvLayout _layout;
+    readonly int _budget;
+    readonly ShotInfo[] _shots;
+    readonly int[] _columns;
+    readonly bool _whole;
+
+    public WideCsvSource(string path, WideCsvLayout layout, DetectorKind kind, int budget = DefaultBudget)
+    {
+        (_path, _name, _layout, _budget) = (path, Path.GetFileName(path), layout, budget);
+        string tableName = layout.ShotTable.Replace("{run}", Path.GetFileNameWithoutExtension(path), StringComparison.Ordinal);
+        string tablePath = Path.Combine(Path.GetDirectoryName(path) ?? "", tableName);
+        InputFiles = [path, tablePath];
+        _shots = ReadShots(tablePath);
+        using (CsvTable table = Open()) _columns = ColumnsOf(table);
+        TimeScan scan = Scan();
+        _whole = scan.Whole;
+        Shape = new RecordShape
+        {
+            Shots = _shots.Length, Samples = scan.Samples, TickSeconds = scan.Step,
+            OriginSeconds = layout.Meaning == SampleMeaning.Instant ? scan.Start - 0.5 * scan.Step : scan.Start, Kind = kind,
+            Scale = layout.Scale, Offset = layout.Offset, LowestCode = layout.LowestCode, HighestCode = layout.HighestCode,
+        };
+    }
+
+    public RecordShape Shape { get; }
+    public IReadOnlyList<string> InputFiles { get; }
+    public IReadOnlyList<ShotInfo> Shots => _shots;
+    public string Reader => "CsvHelper 34.0.0";
+
+    public void Dispose() { }
+
+    public IEnumerable<ShotBlock> ReadBlocks()
+    {
+        int rows = Math.Max(1, _budget / Shape.Samples);
+        for (int first = 0; first < _shots.Length; first += rows)
+        {
+            int count = Math.Min(rows, _shots.Length - first);
+            ShotInfo[] infos = _shots[first..(first + count)];
+            yield return _whole ? new ShotBlock(first, infos, ReadCodes(first, count)) : new ShotBlock(first, infos, ReadValues(first, count));
+        }
+    }
+
+    int[] ReadCodes(int first, int count)
+    {
+        var codes = new int[count * Shape.Samples];
+        using CsvTable table = Open();
+        for (int i = 0; table.Next(); i++)
+            for (int k = 0; k < count; k++)
+                if (!table.TryWhole(_columns[first + k], out codes[k * Shape.Samples + i])) throw Changed();
+        return codes;
+    }
+
+    double[] ReadValues(int first, int count)
+    {
+        var values = new double[count * Shape.Samples];
+        using CsvTable table = Open();
+        for (int i = 0; table.Next(); i++)
+            for (int k = 0; k < count; k++) values[k * Shape.Samples + i] = table.Number(_columns[first + k]);
+        return values;
+    }
+
+    CsvTable Open() => new(_path, _layout.Separator, _layout.Comment);
+
+    DataFaultException Changed() => new(_name, "a file that changes while it is read", "a finished file", "wait until it is written");
+
+    ShotInfo[] ReadShots(string path)
+    {
+        using var table = new CsvTable(path, _layout.Separator, _layout.Comment);
+        ShotColumns columns = _layout.Shots;
+        int Column(string? name) => name is null ? -1 : table.Column(name);
+        int number = Column(columns.Number), kind = table.Column(columns.Kind), condition = Column(columns.Condition);
+        int probe = Column(columns.ProbeMonitor), ablation = Column(columns.AblationMonitor), detuning = Column(columns.Detuning);
+        var (numbers, kinds, conditions) = (new List<double>(), new List<string>(), new List<string>());
+        var (probes, ablations, detunings) = (new List<double>(), new List<double>(), new List<double>());
+        while (table.Next())
+        {
+            if (number >= 0) numbers.Add(table.Number(number));
+            kinds.Add(table.Text(kind));
+            if (condition >= 0) conditions.Add(table.Text(condition));
+            if (probe >= 0) probes.Add(table.Number(probe));
+            if (ablation >= 0) ablations.Add(table.Number(ablation));
+            if (detuning >= 0) detunings.Add(table.Number(detuning));
+        }
+        if (kinds.Count == 0) throw new DataFaultException(Path.GetFileName(path), "no shots", "one row a shot", "export the shot table again");
+        return new ShotTable(number < 0 ? null : [.. numbers], [.. kinds], condition < 0 ? null : [.. conditions], probe < 0 ? null : [.. probes],
+            ablation < 0 ? null : [.. ablations], detuning < 0 ? null : [.. detunings]).ToShots(Path.GetFileName(path), columns);
+    }
+
+    /// <summary>[shots] column of each shot; a column that no shot names is a fault, so that nothing is left out unsaid.</summary>
+    int[] ColumnsOf(CsvTable table)
+    {
+        var place = new Dictionary<string, int>(StringComparer.Ordinal);
+        for (int k = 0; k < table.Headers.Count; k++)
+            if (!place.TryAdd(table.Headers[k], k))
+                throw new DataFaultException(_name, $"two columns \"{table.Headers[k]}\"", "one a shot", "export the file again");
+        int[] columns = [.. _shots.Select(s =>
+        {
+            string header = _layout.ShotColumn.Replace("{number}", s.Number.ToString(CultureInfo.InvariantCulture), StringComparison.Ordinal);
+            return place.TryGetValue(header, out int k) ? k : throw new DataFaultException(_name, $"no column \"{header}\"",
+                "a column for each shot of the shot table", "export both files again, or correct samples.shot in the layout");
+        })];
+        if (table.Headers.Count != columns.Length + 1)
+            throw new DataFaultException(_name, $"{table.Headers.Count - 1} columns beside the time", $"{columns.Length}, the shots of the shot table",
+                "export both files again");
+        return columns;
+    }
+
+    readonly record struct TimeScan(int Samples, double Start, double Step, bool Whole);
+
+    /// <summary>Reads the time column, and whether every sample is a whole number.</summary>
+    TimeScan Scan()
+    {
+        using CsvTable table = Open();
+        int time = table.Column(_layout.TimeColumn);
+        var times = new List<double>();
+        bool whole = true;
+        while (table.Next())
+        {
+            double t = table.Number(time);
+            if (times.Count > 0 && !(t > times[^1]))
+                throw new DataFaultException($"{table.Where}, column \"{_layout.TimeColumn}\"", $"time {t.ToString(CultureInfo.InvariantCulture)} after {times[^1].ToString(CultureInfo.InvariantCulture)}", "rising times", "export the file again");
+            times.Add(t);
+            for (int k = 0; whole && k < _columns.Length; k++) whole = table.TryWhole(_columns[k], out _);
+        }
+        if (times.Count < 2) throw new DataFaultException(_name, $"{times.Count} rows", "two or more sampling times", "export the file again");
+        double step = Rounded((times[^1] - times[0]) / (times.Count - 1), times);
+        return new TimeScan(times.Count, times[0] * _layout.TimeFactor, step * _layout.TimeFactor, whole);
+    }
+
+    /// <summary>The sampling interval as printed: nine digits, if all times agree with it to 1 % of a step.</summary>
+    double Rounded(double step, List<double> times)
+    {
+        double printed = double.Parse(step.ToString("G9", CultureInfo.InvariantCulture), CultureInfo.InvariantCulture);
+        for (int i = 0; i < times.Count; i++)
+            if (Math.Abs(times[i] - times[0] - i * printed) > 0.01 * printed)
+                throw new DataFaultException($"{_name}, column \"{_layout.TimeColumn}\", sample {i}", $"time {times[i].ToString(CultureInfo.InvariantCulture)}",
+                    $"{(times[0] + i * printed).ToString("G9", CultureInfo.InvariantCulture)}: even steps", "export the file with more digits, or without gaps");
+        return printed;
+    }
+}
