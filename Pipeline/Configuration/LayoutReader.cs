@@ -1,0 +1,132 @@
+using Pipeline.Ingest;
+using Pipeline.Quantities;
+
+namespace Pipeline.Configuration;
+
+/// <summary>layouts/NAME.toml to a layout record. To add a format: its name in <see cref="Formats"/> and its reader below.</summary>
+static class LayoutReader
+{
+    static readonly string[] Formats = ["hdf5-matrix", "csv-wide", "molecules-csv", "molecules-hdf5"];
+
+    /// <returns>A <see cref="ShotFileLayout"/> or a <see cref="MoleculeFileLayout"/>.</returns>
+    public static object Read(TomlTable root, string name)
+    {
+        object layout = root.Choice("format", Formats) switch
+        {
+            "hdf5-matrix" => Matrix(root, name),
+            "csv-wide" => Wide(root, name),
+            "molecules-csv" => Molecules(root, name, null),
+            _ => Molecules(root, name, root.Text("group")),
+        };
+        root.RefuseUnknown();
+        return layout;
+    }
+
+    static Hdf5MatrixLayout Matrix(TomlTable root, string name)
+    {
+        TomlTable samples = root.Table("samples");
+        var layout = new Hdf5MatrixLayout
+        {
+            Name = name, Samples = samples.Text("dataset"), Meaning = MeaningOf(samples), Start = TimeOf(samples, "start"), Step = TimeOf(samples, "step"),
+            Scale = FactorOf(samples, "scale", 1), Offset = FactorOf(samples, "offset", 0), LowestCode = CodeOf(samples, "lowest_code"),
+            HighestCode = CodeOf(samples, "highest_code"), Shots = Columns(root.Table("shots"), root.Table("kinds")),
+        };
+        samples.RefuseUnknown();
+        return layout;
+    }
+
+    static WideCsvLayout Wide(TomlTable root, string name)
+    {
+        TomlTable samples = root.Table("samples"), shots = root.Table("shots"), time = samples.Table("time");
+        (char separator, char comment) = Table(root);
+        string shotTable = shots.Text("file");
+        var layout = new WideCsvLayout
+        {
+            Name = name, Separator = separator, Comment = comment, Meaning = MeaningOf(samples), TimeColumn = time.Text("column"),
+            TimeFactor = UnitOf(time, Dimension.Time), ShotColumn = samples.Text("shot"), ShotTable = shotTable,
+            Scale = samples.Has("scale") ? samples.Number("scale") : 1, Offset = samples.Has("offset") ? samples.Number("offset") : 0,
+            LowestCode = CodeOf(samples, "lowest_code"), HighestCode = CodeOf(samples, "highest_code"), Shots = Columns(shots, root.Table("kinds")),
+        };
+        if (!layout.ShotColumn.Contains("{number}", StringComparison.Ordinal)) throw samples.Refuse("shot", $"\"{layout.ShotColumn}\"", "a column name with {number} in it");
+        if (layout.ShotTable.Contains("..", StringComparison.Ordinal)) throw shots.Refuse("file", $"\"{layout.ShotTable}\"", "a file in the day's folder");
+        time.RefuseUnknown();
+        samples.RefuseUnknown();
+        return layout;
+    }
+
+    static MoleculeFileLayout Molecules(TomlTable root, string name, string? group)
+    {
+        (char separator, char comment) = group is null ? Table(root) : (',', '#');
+        TomlTable c = root.Table("columns");
+        var layout = new MoleculeFileLayout
+        {
+            Name = name, Group = group, Separator = separator, Comment = comment, Time = c.Text("time"), Z = c.Text("z"), Vz = c.Text("vz"),
+            X = c.OptionalText("x"), Y = c.OptionalText("y"), Vx = c.OptionalText("vx"), Vy = c.OptionalText("vy"), Weight = c.Text("weight"),
+        };
+        c.RefuseUnknown();
+        return layout;
+    }
+
+    static ShotColumns Columns(TomlTable shots, TomlTable kinds)
+    {
+        TomlTable? detuning = shots.OptionalTable("detuning");
+        string? condition = shots.OptionalText("condition"), only = shots.OptionalText("only_condition");
+        if (condition is null == only is null)
+            throw shots.Refuse("condition", condition is null ? "neither condition nor only_condition" : "both condition and only_condition", "one of them");
+        var columns = new ShotColumns
+        {
+            Number = shots.OptionalText("number"), Kind = shots.Text("kind"), Condition = condition, OnlyCondition = only,
+            ProbeMonitor = shots.OptionalText("probe_monitor"), AblationMonitor = shots.OptionalText("ablation_monitor"), Detuning = detuning?.Text("column"),
+            DetuningFactor = detuning is null ? 1 : UnitOf(detuning, Dimension.Frequency),
+            KindLabels = [kinds.Text("signal"), kinds.Text("no_ablation"), kinds.Text("probe_blocked"), kinds.Text("dark")],
+        };
+        detuning?.RefuseUnknown();
+        shots.RefuseUnknown();
+        kinds.RefuseUnknown();
+        return columns;
+    }
+
+    static (char Separator, char Comment) Table(TomlTable root)
+    {
+        TomlTable? table = root.OptionalTable("table");
+        char One(string key, char otherwise)
+        {
+            if (table is null || !table.Has(key)) return otherwise;
+            string text = table.Text(key);
+            return text == "tab" ? '\t' : text.Length == 1 ? text[0] : throw table.Refuse(key, $"\"{text}\"", "one character, or \"tab\"");
+        }
+        (char, char) characters = (One("separator", ','), One("comment", '#'));
+        table?.RefuseUnknown();
+        return characters;
+    }
+
+    static SampleMeaning MeaningOf(TomlTable samples) =>
+        samples.Choice("refers_to", ("bin start", SampleMeaning.BinStart), ("instant", SampleMeaning.Instant));
+
+    static int? CodeOf(TomlTable samples, string key) => samples.Has(key) ? samples.Whole(key, int.MinValue, int.MaxValue) : null;
+
+    static double UnitOf(TomlTable t, Dimension dimension)
+    {
+        string unit = t.Text("unit");
+        return UnitTable.TryFind(dimension, unit, out double factor) ? factor : throw t.Refuse("unit", $"\"{unit}\"", $"one of {UnitTable.Accepted(dimension)}");
+    }
+
+    static StatedOrStored TimeOf(TomlTable samples, string key)
+    {
+        if (!samples.IsTable(key)) return new StatedOrStored(samples.Quantity(key, Dimension.Time).Value, null);
+        TomlTable stored = samples.Table(key);
+        var at = new StatedOrStored(null, stored.Text("attribute"), UnitOf(stored, Dimension.Time));
+        stored.RefuseUnknown();
+        return at;
+    }
+
+    static StatedOrStored FactorOf(TomlTable samples, string key, double otherwise)
+    {
+        if (!samples.Has(key)) return new StatedOrStored(otherwise, null);
+        if (!samples.IsTable(key)) return new StatedOrStored(samples.Number(key), null);
+        TomlTable stored = samples.Table(key);
+        var at = new StatedOrStored(null, stored.Text("attribute"));
+        stored.RefuseUnknown();
+        return at;
+    }
+}
