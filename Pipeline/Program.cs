@@ -1,1 +1,1 @@
-return 0;
+return await Pipeline.Commands.CommandLine.Run(args).ConfigureAwait(false);

@@ -1,3 +1,5 @@
+using System.Text.Json.Serialization;
+
 namespace Pipeline.Fitting;
 
 /// <summary>What one common cause moves a result by, for one of its standard deviations.</summary>
@@ -6,16 +8,22 @@ public sealed record BudgetLine(string Cause, double Shift);
 /// <summary>A result with its statistical and systematic parts, or the reason why there is none.</summary>
 public sealed record Quantity
 {
+    [JsonConstructor]
     Quantity() { }
 
     /// <summary>NaN where not determined.</summary>
+    [JsonInclude]
     public double Value { get; private init; }
     /// <summary>One standard error from the scatter between blocks of shots.</summary>
+    [JsonInclude]
     public double Statistical { get; private init; }
     /// <summary>One standard error from all common causes, in quadrature.</summary>
+    [JsonInclude]
     public double Systematic { get; private init; }
+    [JsonInclude]
     public IReadOnlyList<BudgetLine> Budget { get; private init; } = [];
     /// <summary>Null where the value stands.</summary>
+    [JsonInclude]
     public string? NotDeterminedBecause { get; private init; }
 
     /// <summary>Statistical and systematic in quadrature.</summary>

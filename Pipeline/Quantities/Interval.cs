@@ -1,3 +1,5 @@
+using System.Text.Json.Serialization;
+
 namespace Pipeline.Quantities;
 
 /// <summary>A closed interval that covers the true value with the stated confidence.</summary>
@@ -7,6 +9,7 @@ public readonly record struct Interval
     /// <param name="high">Upper end.</param>
     /// <param name="confidence">Coverage, in (0, 1).</param>
     /// <exception cref="ArgumentOutOfRangeException">Ends out of order, or a confidence outside (0, 1).</exception>
+    [JsonConstructor]
     public Interval(double low, double high, double confidence)
     {
         if (!(low <= high)) throw new ArgumentOutOfRangeException(nameof(low), low, $"must not exceed the upper end {high}");

@@ -1,0 +1,63 @@
+using System.Globalization;
+using Pipeline.Analysis;
+using Pipeline.Comparison;
+using Pipeline.Fitting;
+using Pipeline.Reduction;
+
+namespace Pipeline.Commands;
+
+/// <summary>What the commands say on the console.</summary>
+static class Lines
+{
+    public static void Shots(BinnedRun run, bool reused)
+    {
+        int cut = run.Cuts.Sum(c => c.Numbers.Count);
+        string why = cut == 0 ? "" : $" ({string.Join(", ", run.Cuts.Select(c => $"{c.Numbers.Count} {c.Reason}"))})";
+        Say($"shots: {run.ShotsRead} read, {cut} cut{why}{(reused ? "; reused from an earlier ingest" : "")}");
+    }
+
+    public static void Numbers(SpectrumOutcome fit, bool reused)
+    {
+        Say($"{fit.Signal.Condition}{(reused ? ", reused from an earlier fit" : "")}:");
+        Say($"  molecules a shot  {Text(fit.Number, "")}");
+        Say($"  mean velocity     {Text(fit.Mean, " m/s")}");
+        Say($"  spread            {Text(fit.Spread, " m/s")}");
+        Say($"  below {fit.Below.CaptureSpeed:G4} m/s    {Below(fit.Below)}");
+    }
+
+    public static void Verdict(RunOutcome outcome)
+    {
+        Say($"{outcome.Name} {Word(outcome.Verdict.Judgement)}");
+        foreach (string reason in outcome.Verdict.Reasons) Say($"  {reason}");
+    }
+
+    /// <summary>A row of the night's table.</summary>
+    public static void Row(RunOutcome run)
+    {
+        foreach (ConditionOutcome c in run.Conditions)
+            Say($"  {run.Name,-18} {c.Name,-6} {Short(c.Fit.Number),-18} {Short(c.Fit.Mean),-16} {BelowShort(c.Fit.Below),-16} {Word(run.Verdict.Judgement)}");
+    }
+
+    public static string Head => $"  {"run",-18} {"cond.",-6} {"molecules/shot",-18} {"mean m/s",-16} {"below capture",-16} verdict";
+
+    public static string Word(Judgement judgement) => judgement switch
+    {
+        Judgement.Agrees => "agrees",
+        Judgement.Disagrees => "disagrees",
+        _ => "is undecided",
+    };
+
+    static string Text(Quantity q, string unit) => q.NotDeterminedBecause is { } because ? $"not determined: {because}"
+        : Format($"{q.Value:G5} ± {q.Statistical:G2} (statistical) ± {q.Systematic:G2} (systematic){unit}");
+
+    static string Below(BelowCapture b) => b.NotDeterminedBecause is { } because ? $"not determined: {because}"
+        : Format($"{b.Value:G3}, {100 * b.Interval!.Value.Confidence:G3} % interval {b.Interval.Value.Low:G3} to {b.Interval.Value.High:G3} molecules a shot");
+
+    static string Short(Quantity q) => q.NotDeterminedBecause is null ? Format($"{q.Value:G5} ± {q.Total:G2}") : "not determined";
+
+    static string BelowShort(BelowCapture b) => b.Interval is { } i ? Format($"{i.Low:G3} to {i.High:G3}") : "not determined";
+
+    static string Format(FormattableString text) => text.ToString(CultureInfo.InvariantCulture);
+
+    static void Say(FormattableString text) => Console.WriteLine(text.ToString(CultureInfo.InvariantCulture));
+}

@@ -1,0 +1,77 @@
+using System.IO.Enumeration;
+using System.Security.Cryptography;
+using Pipeline.Analysis;
+using Pipeline.Configuration;
+using Pipeline.Ingest;
+
+namespace Pipeline.Night;
+
+/// <summary>A file of the day that a rule calls a run.</summary>
+/// <param name="Name">File name without extension.</param>
+/// <param name="Path">The file.</param>
+/// <param name="Rule">The rule.</param>
+/// <param name="Layout">Its layout.</param>
+public sealed record RunFile(string Name, string Path, RunRule Rule, ShotFileLayout Layout);
+
+/// <summary>What a day's folder holds.</summary>
+public sealed class DayFolder
+{
+    DayFolder(string path, IReadOnlyList<RunFile> runs, IReadOnlyList<string> notRuns) => (Path, Runs, NotRuns) = (path, runs, notRuns);
+
+    public string Path { get; }
+    /// <summary>Name of the folder.</summary>
+    public string Name => System.IO.Path.GetFileName(System.IO.Path.TrimEndingDirectorySeparator(System.IO.Path.GetFullPath(Path)));
+    /// <summary>In order of name.</summary>
+    public IReadOnlyList<RunFile> Runs { get; }
+    /// <summary>Files that no rule calls a run, and that no run or prediction needs.</summary>
+    public IReadOnlyList<string> NotRuns { get; }
+
+    /// <exception cref="DataFaultException">No such folder, or two runs of one name.</exception>
+    public static DayFolder Open(string path, LabConfiguration lab)
+    {
+        if (!Directory.Exists(path)) throw new DataFaultException(path, "no such folder", "a day's folder with shot files", "check the name");
+        string[] files = [.. Directory.GetFiles(path).Select(f => System.IO.Path.GetFileName(f)).Where(f => f[0] != '.').Order(StringComparer.Ordinal)];
+        RunFile[] runs = [.. files.Select(f => RunOf(path, f, lab)).OfType<RunFile>()];
+        foreach (var same in runs.GroupBy(r => r.Name, StringComparer.Ordinal).Where(g => g.Count() > 1))
+            throw new DataFaultException(path, $"two runs named {same.Key}: {string.Join(", ", same.Select(r => System.IO.Path.GetFileName(r.Path)))}", "one file a name", "rename one of them");
+        var used = runs.SelectMany(r => Companions(r)).ToHashSet(StringComparer.Ordinal);
+        return new DayFolder(path, runs, [.. files.Where(f => !used.Contains(f))]);
+    }
+
+    /// <summary>The run of this name, with or without extension.</summary>
+    public RunFile Find(string name) => Runs.FirstOrDefault(r => r.Name == name || System.IO.Path.GetFileName(r.Path) == name)
+        ?? throw new DataFaultException(Name, $"no run \"{name}\"", Runs.Count == 0 ? "at least one run" : $"one of {string.Join(", ", Runs.Select(r => r.Name))}",
+            "check the name, or the [[runs]] rules in night.toml");
+
+    static RunFile? RunOf(string folder, string file, LabConfiguration lab)
+    {
+        RunRule? rule = lab.Runs.FirstOrDefault(r => FileSystemName.MatchesSimpleExpression(r.Match, file, ignoreCase: false));
+        return rule is null ? null
+            : new RunFile(System.IO.Path.GetFileNameWithoutExtension(file), System.IO.Path.Combine(folder, file), rule, lab.ShotLayouts[rule.Layout]);
+    }
+
+    static IEnumerable<string> Companions(RunFile run)
+    {
+        yield return System.IO.Path.GetFileName(run.Path);
+        if (run.Layout is WideCsvLayout wide) yield return wide.ShotTable.Replace("{run}", run.Name, StringComparison.Ordinal);
+    }
+}
+
+/// <summary>Files by content.</summary>
+static class Hashes
+{
+    /// <exception cref="DataFaultException">The file cannot be read.</exception>
+    public static InputFile Of(string folder, string path)
+    {
+        string name = Path.GetRelativePath(folder, path).Replace('\\', '/');
+        try
+        {
+            using FileStream stream = File.OpenRead(path);
+            return new InputFile(name, Convert.ToHexStringLower(SHA256.HashData(stream)));
+        }
+        catch (Exception e) when (e is IOException or UnauthorizedAccessException)
+        {
+            throw new DataFaultException(name, $"a file that cannot be read ({e.Message})", "a readable file", "check name and permission");
+        }
+    }
+}

@@ -1,0 +1,45 @@
+using Pipeline.Analysis;
+using Pipeline.Configuration;
+using Pipeline.Results;
+using Serilog;
+
+namespace Pipeline.Night;
+
+/// <summary>All runs of a day; a run that fails never stops the others.</summary>
+public static class NightWork
+{
+    /// <param name="lab">Configuration.</param>
+    /// <param name="day">The day's folder.</param>
+    /// <param name="results">Folder of the day's results.</param>
+    /// <param name="log">Where each run is told of.</param>
+    public static NightOutcome Run(LabConfiguration lab, DayFolder day, string results, ILogger log)
+    {
+        var done = new RunOutcome?[day.Runs.Count];
+        var failed = new FailedRun?[day.Runs.Count];
+        Parallel.For(0, day.Runs.Count, new ParallelOptions { MaxDegreeOfParallelism = Environment.ProcessorCount }, k =>
+        {
+            RunFile run = day.Runs[k];
+            try
+            {
+                done[k] = Analyse(lab, day, run, results);
+                log.Information("{Run}: {Judgement}", run.Name, done[k]!.Verdict.Judgement);
+            }
+            catch (DataFaultException e)
+            {
+                failed[k] = new FailedRun(run.Name, e.Fault);
+                RunResults.RemoveStale(Path.Combine(results, run.Name));
+                log.Error("{Run}: not analysed. {Fault}", run.Name, e.Fault.ToString());
+            }
+        });
+        var night = new NightOutcome(day.Name, [.. done.OfType<RunOutcome>()], [.. failed.OfType<FailedRun>()], day.NotRuns);
+        RunResults.Write(results, night);
+        return night;
+    }
+
+    static RunOutcome Analyse(LabConfiguration lab, DayFolder day, RunFile file, string results)
+    {
+        var work = new RunWork(lab, day, file, results);
+        Reduction.BinnedRun run = work.Ingest(out _);
+        return work.Compare(run, work.Fit(run, out _));
+    }
+}

@@ -1,0 +1,103 @@
+using System.IO.Enumeration;
+using System.Security.Cryptography;
+using System.Text;
+using Pipeline.Analysis;
+using Pipeline.Configuration;
+using Pipeline.Fitting;
+using Pipeline.Ingest;
+using Pipeline.Predictions;
+using Pipeline.Reduction;
+using Pipeline.Results;
+
+namespace Pipeline.Night;
+
+/// <summary>The stages of one run, each of which reuses what an earlier one left if it was made from the same input, configuration and
+/// program.</summary>
+public sealed class RunWork
+{
+    readonly LabConfiguration _lab;
+    readonly DayFolder _day;
+    readonly RunFile _run;
+    readonly IReadOnlyList<InputFile> _inputs;
+    readonly string _fingerprint, _reader;
+
+    /// <param name="lab">Configuration.</param>
+    /// <param name="day">The day.</param>
+    /// <param name="run">The run.</param>
+    /// <param name="results">Folder of the day's results.</param>
+    /// <exception cref="DataFaultException">An input file is missing or cannot be used.</exception>
+    public RunWork(LabConfiguration lab, DayFolder day, RunFile run, string results)
+    {
+        (_lab, _day, _run, Folder) = (lab, day, run, Path.Combine(results, run.Name));
+        using (IShotSource source = ShotFiles.Open(run.Path, run.Layout, lab.Setup.Detector.Kind))
+        {
+            _inputs = [.. source.InputFiles.Select(f => Hashes.Of(day.Path, f))];
+            _reader = source.Reader;
+        }
+        string all = string.Join('\n', [.. _inputs.Select(i => $"{i.Name} {i.Sha256}"), lab.Digest, ProgramVersion.Text, $"{RunAnalysis.NumericalVersion}"]);
+        _fingerprint = Convert.ToHexStringLower(SHA256.HashData(Encoding.UTF8.GetBytes(all)));
+    }
+
+    /// <summary>Folder of the run's results.</summary>
+    public string Folder { get; }
+
+    /// <summary>Shots to sums.</summary>
+    public BinnedRun Ingest(out bool reused)
+    {
+        BinnedRun? known = ReducedFile.Read(Folder, _fingerprint);
+        reused = known is not null;
+        if (known is not null) return known;
+        using IShotSource source = ShotFiles.Open(_run.Path, _run.Layout, _lab.Setup.Detector.Kind);
+        BinnedRun run = Reducer.Reduce(source.Shape, source.Shots, source.ReadBlocks(), _lab.Setup.Detector, _lab.Analysis.Reduction);
+        ReducedFile.Write(Folder, _fingerprint, run);
+        return run;
+    }
+
+    /// <summary>Sums to spectra and numbers.</summary>
+    public IReadOnlyList<SpectrumOutcome> Fit(BinnedRun run, out bool reused)
+    {
+        IReadOnlyList<SpectrumOutcome>? known = StageFiles.ReadFits(Folder, _fingerprint);
+        reused = known is not null;
+        if (known is not null) return known;
+        IReadOnlyList<SpectrumOutcome> fits = RunAnalysis.Fit(run, _run.Rule.Mode, _lab.Setup, _lab.Analysis);
+        StageFiles.WriteFits(Folder, _fingerprint, fits);
+        return fits;
+    }
+
+    /// <summary>Spectra and predictions to the verdict, and all result files.</summary>
+    public RunOutcome Compare(BinnedRun run, IReadOnlyList<SpectrumOutcome> fits)
+    {
+        var predictions = new Dictionary<string, ConditionPrediction>(StringComparer.Ordinal);
+        var files = new List<InputFile>();
+        foreach (string condition in run.Conditions)
+            if (RuleFor(condition) is { } rule)
+            {
+                string path = Path.Combine(_day.Path, rule.File);
+                MoleculeList molecules = MoleculeFiles.Read(path, _lab.MoleculeLayouts[rule.Layout], rule.Weighting);
+                predictions[condition] = new ConditionPrediction(molecules, rule.Normalisation == Normalisation.Relative);
+                files.Add(Hashes.Of(_day.Path, path));
+            }
+        (IReadOnlyList<ConditionOutcome> conditions, Comparison.Verdict verdict) = RunAnalysis.Compare(fits, predictions, _lab.Setup, _lab.Analysis);
+        var outcome = new RunOutcome
+        {
+            Name = _run.Name, Mode = _run.Rule.Mode, Tally = ShotTally.Of(run), Conditions = conditions, Verdict = verdict,
+            Remarks = [.. run.Remarks, .. fits.SelectMany(f => f.Remarks).Distinct(StringComparer.Ordinal)],
+            Provenance = new Provenance
+            {
+                Inputs = _inputs, Predictions = files, Configuration = _lab.Digest, Program = ProgramVersion.Text,
+                NumericalVersion = RunAnalysis.NumericalVersion, Seed = _lab.Analysis.Fit.Seed, Reader = _reader,
+            },
+        };
+        RunResults.Write(Folder, outcome);
+        return outcome;
+    }
+
+    PredictionRule? RuleFor(string condition) => _lab.Predictions.FirstOrDefault(p =>
+        p.Condition == condition && FileSystemName.MatchesSimpleExpression(p.Runs, _run.Name, ignoreCase: false));
+}
+
+/// <summary>Version of the program as it stands in results.</summary>
+static class ProgramVersion
+{
+    public static string Text { get; } = $"arrivals {typeof(ProgramVersion).Assembly.GetName().Version?.ToString(3)}";
+}

@@ -1,0 +1,1 @@
+using Pipeline.Analysis; namespace Pipeline.Reports; public static class NightTable { public static string Render(NightOutcome o) => o.ToString(); }
