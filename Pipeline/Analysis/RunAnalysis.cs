@@ -42,7 +42,7 @@ public static class RunAnalysis
                 conditions.Add(new ConditionOutcome(fit, null, false));
                 continue;
             }
-            var both = new ComparisonCase(fit.Signal, Folding(prediction, fit, settings), setup, settings.Fit, settings.Comparison, fit.YieldScatter);
+            var both = new ComparisonCase(fit, Folding(prediction, fit, settings), setup, settings.Fit, settings.Comparison);
             conditions.Add(new ConditionOutcome(fit, both.Folded, prediction.RelativeOnly));
             answers.AddRange(Questions.All.Where(q => !(q.NeedsAbsolute && prediction.RelativeOnly)).Select(q => q.Ask(both)));
         }

@@ -24,6 +24,9 @@ static class NightCommand
             string dayPath = parsed.GetRequiredValue(folders.Day);
             LabConfiguration lab = ConfigurationReader.Read(Folders.FindConfig(parsed.GetValue(folders.Config), dayPath));
             DayFolder day = DayFolder.Open(dayPath, lab);
+            if (day.Runs.Count == 0)
+                throw new DataFaultException(dayPath, $"no file that a [[runs]] rule matches ({string.Join(", ", lab.Runs.Select(r => r.Match))})", "at least one run",
+                    "name the right folder, or correct the rules in night.toml");
             string results = Path.Combine(parsed.GetRequiredValue(folders.Results), day.Name);
             Directory.CreateDirectory(results);
             using Logger log = OpenLog(Path.Combine(results, "night.log.jsonl"));

@@ -13,16 +13,15 @@ public sealed class ComparisonCase
     /// <summary>Merged bins hold equal shares of the predicted signal, at least so many counts each, and are not more than this.</summary>
     const int MostBins = 30, CountsEach = 25, FewestBins = 4;
 
-    /// <param name="signal">The data.</param>
+    /// <param name="outcome">The data.</param>
     /// <param name="fold">The prediction for a setup and a stretch of all arrival times.</param>
     /// <param name="setup">The apparatus.</param>
     /// <param name="fit">The window.</param>
     /// <param name="settings">What matters.</param>
-    /// <param name="yieldScatter">Relative error of the mean yield beyond counting.</param>
-    public ComparisonCase(NetSignal signal, Func<Setup, double, FoldedPrediction> fold, Setup setup, FitSettings fit,
-        ComparisonSettings settings, double yieldScatter)
+    public ComparisonCase(SpectrumOutcome outcome, Func<Setup, double, FoldedPrediction> fold, Setup setup, FitSettings fit, ComparisonSettings settings)
     {
-        (Condition, Settings, YieldScatter, Shots) = (signal.Condition, settings, yieldScatter, signal.Shots);
+        NetSignal signal = outcome.Signal;
+        (Condition, Settings, YieldScatter, YieldFreedom) = (signal.Condition, settings, outcome.YieldScatter, outcome.YieldFreedom);
         var window = new FitWindow(signal, fit.FromSeconds, fit.ToSeconds);
         Folded = fold(setup, 1);
         double[] counts = InWindow(window, Folded.Signal);
@@ -55,8 +54,9 @@ public sealed class ComparisonCase
 
     public string Condition { get; }
     public ComparisonSettings Settings { get; }
+    /// <summary>Relative error of the mean yield beyond counting, and its degrees of freedom.</summary>
     public double YieldScatter { get; }
-    public double Shots { get; }
+    public int YieldFreedom { get; }
     public FoldedPrediction Folded { get; }
     public double[] Total { get; }
     public double[] Background { get; }

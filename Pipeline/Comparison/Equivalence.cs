@@ -9,7 +9,12 @@ static class Equivalence
     /// <summary>95 % quantile of the normal distribution.</summary>
     const double OneSided = 1.6448536269514722;
 
-    public static bool Holds(double difference, double error, double matters) => Math.Abs(difference) + OneSided * error < matters;
+    /// <param name="difference">Measured less predicted.</param>
+    /// <param name="error">Its standard error.</param>
+    /// <param name="matters">The difference that matters.</param>
+    /// <param name="quantile">95 % quantile of the difference in standard errors; the normal one where errors are well known.</param>
+    public static bool Holds(double difference, double error, double matters, double quantile = OneSided) =>
+        Math.Abs(difference) + quantile * error < matters;
 
     /// <summary>How many times the shots would decide, or what stands in the way.</summary>
     /// <param name="difference">Measured less predicted.</param>

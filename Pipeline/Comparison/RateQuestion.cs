@@ -17,11 +17,14 @@ sealed class RateQuestion : IQuestion
         double simulation = Math.Abs(rate) * Math.Sqrt(both.PredictedVariance.Sum()) / predicted;
         double systematic = Math.Abs(rate) * Math.Sqrt(both.Nuisances.Sum(n => Square(n.Vector.Sum() / predicted)));
         double error = Math.Sqrt(Square(statistical) + Square(simulation) + Square(systematic)), matters = both.Settings.RateMatters;
+        // few blocks of shots know their own scatter badly: Student's t with effective degrees of freedom
+        double freedom = WelchSatterthwaite.EffectiveFreedom([(Square(rate * both.YieldScatter), both.YieldFreedom),
+            (Square(error) - Square(rate * both.YieldScatter), double.PositiveInfinity)]);
         return new Answer
         {
             Condition = both.Condition, Question = Name, Measured = rate, Predicted = 1, Statistical = statistical,
-            Systematic = systematic, Simulation = simulation, PValue = Tail.NormalTwoSided((rate - 1) / error),
-            WouldHaveShown = Equivalence.Holds(rate - 1, error, matters),
+            Systematic = systematic, Simulation = simulation, PValue = Tail.StudentTwoSided((rate - 1) / error, freedom),
+            WouldHaveShown = Equivalence.Holds(rate - 1, error, matters, Tail.StudentQuantile(0.95, freedom)),
             Finding = string.Create(CultureInfo.InvariantCulture, $"{rate:F3} ± {error:F3} of the predicted counts"),
             WhatWouldDecide = Equivalence.WhatWouldDecide(rate - 1, statistical, double.Hypot(systematic, simulation), matters),
         };

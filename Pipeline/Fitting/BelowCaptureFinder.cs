@@ -2,6 +2,7 @@ using MathNet.Numerics.Distributions;
 using Pipeline.Apparatus;
 using Pipeline.Quantities;
 using Pipeline.Response;
+using Pipeline.Statistics;
 
 namespace Pipeline.Fitting;
 
@@ -16,13 +17,15 @@ static class BelowCaptureFinder
         double[] seen = [.. share.Select((s, c) => blind[c] ? 0 : s)];
         if (seen.Sum() <= 0)
             return new BelowCapture(setup.CaptureSpeed, double.NaN, null, "no velocity below capture is inside grid and fit window");
-        StrictBound bound = StrictBounds.Find(window, response, seen, settings.Confidence);
-        double z = Normal.InvCDF(0, 1, 0.5 * (1 + settings.Confidence));
-        double relative = double.Hypot(RelativeSystematic(quoted, seen), yieldScatter) * z;
-        double high = bound.Value + double.Hypot(bound.Interval.High - bound.Value, relative * bound.Interval.High);
-        double low = Math.Max(0, bound.Value - double.Hypot(bound.Value - bound.Interval.Low, relative * bound.Value));
-        // a lower end at zero stays: common factors cannot make nothing into something, nor the reverse
-        return new BelowCapture(setup.CaptureSpeed, bound.Value, new Interval(bound.Interval.Low == 0 ? 0 : low, high, settings.Confidence));
+        LinearEstimate estimate = LinearEstimate.Of(window, response, quoted.Main, seen);
+        Interval counts = SignalInterval.Profile(Math.Max(0, estimate.Counts), estimate.Background, estimate.BackgroundError, settings.Confidence);
+        double z = Normal.InvCDF(0, 1, 0.5 * (1 + settings.Confidence)), value = Math.Max(0, estimate.Value);
+        double common = z * double.Hypot(RelativeSystematic(quoted, seen), yieldScatter);
+        (double lowest, double highest) = (estimate.Unit * counts.Low, estimate.Unit * counts.High);
+        double high = value + double.Hypot(highest - value, common * highest);
+        // common factors cannot make nothing into something, nor the reverse: a lower end at zero stays
+        double low = lowest == 0 ? 0 : Math.Max(0, value - double.Hypot(value - lowest, common * value));
+        return new BelowCapture(setup.CaptureSpeed, estimate.Value, new Interval(low, high, settings.Confidence));
     }
 
     /// <summary>Of the number below where the fit has one, else of the whole number: the efficiency is common to both.</summary>

@@ -79,6 +79,9 @@ sealed class Design
         return g;
     }
 
+    /// <summary>[bins] A x for any sign of x, without the background.</summary>
+    public double[] Apply(ReadOnlySpan<double> x) => [.. Means(x).Zip(Window.Background, (m, b) => m - b)];
+
     static (int First, double[] Column) Slice(FitWindow window, ResponseMatrix response, int cell)
     {
         ReadOnlySpan<double> whole = response.Column(cell);

@@ -26,6 +26,9 @@ sealed class EstimatorRun
         });
     }
 
+    /// <summary>The fit itself.</summary>
+    public FittedSpectrum Main => _fit;
+
     /// <summary>A function of the spectrum with its errors.</summary>
     public Quantity Quantity(Func<double[], double> of)
     {

@@ -30,11 +30,6 @@ sealed class PenalisedFit
     /// <summary>[variables * variables] A^T W A + P + priors of the last round.</summary>
     public double[] Hessian { get; private set; } = [];
     public bool Converged { get; private set; }
-    /// <summary>Adds 2 * Pull * (direction . molecules) to what is minimised: a positive pull holds that quantity down.</summary>
-    public double Pull { get; set; }
-    /// <summary>[cells] the quantity that is pulled.</summary>
-    public double[] Direction { get; init; } = [];
-
     /// <summary>Deviance of the data and of the priors of the causes, without the penalty.</summary>
     public double Deviance { get; private set; }
 
@@ -57,7 +52,6 @@ sealed class PenalisedFit
             double[] before = [.. X];
             Scale(_design.Means(X));
             double[] g = _design.Project(Weights, Net());
-            for (int c = 0; c < Direction.Length; c++) g[c] -= Pull * Direction[c];
             bool solved = _solver.Solve(Hessian, g);
             double next = ObjectiveAt(X);
             for (int half = 0; half < 12 && !(next <= objective * (1 + 1e-12)); half++)
@@ -87,7 +81,7 @@ sealed class PenalisedFit
         for (int k = _design.Cells; k < _design.Variables; k++) Hessian[k * _design.Variables + k] += 1;
     }
 
-    double ObjectiveAt(double[] x) => DevianceAt(_design.Means(x)) + PriorAt(x) + QuadraticForm(x) + 2 * Pull * Cholesky.Dot(Direction, x.AsSpan(0, Direction.Length));
+    double ObjectiveAt(double[] x) => DevianceAt(_design.Means(x)) + PriorAt(x) + QuadraticForm(x);
 
     double PriorAt(double[] x) => x.Skip(_design.Cells).Sum(a => a * a);
 

@@ -20,8 +20,9 @@ public static class SpectrumFitter
         var window = new FitWindow(signal, settings.FromSeconds, settings.ToSeconds);
         var replicas = new Replicas(run, signal, background, setup.Detector, settings);
         double yieldScatter = replicas.YieldScatter(window);
+        int freedom = (run.Find(condition, ShotKind.Signal)?.BlockShots.Length ?? 1) - 1;
         FlightMap flight = setup.FlightFor(condition);
-        if (flight is AmbiguousFlight) return Ambiguous(signal, flight, setup, yieldScatter);
+        if (flight is AmbiguousFlight) return Ambiguous(signal, flight, setup, yieldScatter, freedom);
         var grid = new VelocityGrid(settings.VelocityFrom, settings.VelocityTo, settings.VelocityStep);
         Func<Setup, ResponseMatrix> build = s => mode.Build(s, condition, signal.Axis, grid);
         var responses = new ShiftedResponses(setup, build);
@@ -35,17 +36,19 @@ public static class SpectrumFitter
             Spectra = [.. outcomes.Select(o => o.ToSpectrum(signal, weak))],
             Below = BelowCaptureFinder.Find(window, responses.Main, setup, settings, yieldScatter, outcomes[0]),
             YieldScatter = yieldScatter,
+            YieldFreedom = freedom,
             Remarks = [.. signal.Remarks, .. UnseenRemarks(condition, window, responses.Main), .. BlockRemarks(run, condition)],
         };
     }
 
-    static SpectrumOutcome Ambiguous(NetSignal signal, FlightMap flight, Setup setup, double yieldScatter)
+    static SpectrumOutcome Ambiguous(NetSignal signal, FlightMap flight, Setup setup, double yieldScatter, int freedom)
     {
         const string Because = "arrival time has no unique speed in this condition; folded predictions can be compared, a Doppler scan would tell";
         return new SpectrumOutcome
         {
             Signal = signal, Flight = flight.Name, Spectra = [], NotDeterminedBecause = Because,
-            Below = new BelowCapture(setup.CaptureSpeed, double.NaN, null, Because), YieldScatter = yieldScatter, Remarks = signal.Remarks,
+            Below = new BelowCapture(setup.CaptureSpeed, double.NaN, null, Because), YieldScatter = yieldScatter, YieldFreedom = freedom,
+            Remarks = signal.Remarks,
         };
     }
 

@@ -31,7 +31,7 @@ public sealed record VelocitySpectrum
 
 /// <summary>The number below the capture velocity.</summary>
 /// <param name="CaptureSpeed">m/s.</param>
-/// <param name="Value">Molecules a shot at the maximum of the likelihood; NaN where not determined.</param>
+/// <param name="Value">Molecules a shot; unbiased, and so negative where the background fluctuates up; NaN where not determined.</param>
 /// <param name="Interval">With systematics; null where not determined.</param>
 /// <param name="NotDeterminedBecause">Null where the value stands.</param>
 public sealed record BelowCapture(double CaptureSpeed, double Value, Interval? Interval, string? NotDeterminedBecause = null);
@@ -49,6 +49,8 @@ public sealed record SpectrumOutcome
     public string? NotDeterminedBecause { get; init; }
     /// <summary>Standard error of the mean yield beyond counting, relative: shots differ by more than their Poisson noise.</summary>
     public required double YieldScatter { get; init; }
+    /// <summary>Degrees of freedom of <see cref="YieldScatter"/>: blocks of signal shots less one.</summary>
+    public required int YieldFreedom { get; init; }
     public IReadOnlyList<string> Remarks { get; init; } = [];
 
     public Quantity Number => Quoted(s => s.Number);

@@ -26,11 +26,21 @@ public static class NightWork
             }
             catch (DataFaultException e)
             {
-                failed[k] = new FailedRun(run.Name, e.Fault);
-                RunResults.RemoveStale(Path.Combine(results, run.Name));
-                log.Error("{Run}: not analysed. {Fault}", run.Name, e.Fault.ToString());
+                Fail(k, e.Fault, null);
+            }
+            catch (Exception e)
+            {
+                // a defect of the program in one run must not cost the night the others
+                Fail(k, new Fault(run.Name, $"a defect of the program ({e.GetType().Name}: {e.Message})", "an analysis or a fault in the data",
+                    "please report it, with night.log.jsonl"), e);
             }
         });
+        void Fail(int k, Fault fault, Exception? defect)
+        {
+            failed[k] = new FailedRun(day.Runs[k].Name, fault);
+            RunResults.RemoveStale(Path.Combine(results, day.Runs[k].Name));
+            log.Error(defect, "{Run}: not analysed. {Fault}", day.Runs[k].Name, fault.ToString());
+        }
         var night = new NightOutcome(day.Name, [.. done.OfType<RunOutcome>()], [.. failed.OfType<FailedRun>()], day.NotRuns);
         RunResults.Write(results, night);
         return night;

@@ -28,6 +28,7 @@ public static class RunResults
     /// <summary>A run that failed leaves no result that could be taken for one of this night.</summary>
     public static void RemoveStale(string folder)
     {
+        if (!Directory.Exists(folder)) return;
         foreach (string name in (string[])["result.json", "report.html", "spectrum.csv", "signal.csv", "spectrum.h5"])
             File.Delete(Path.Combine(folder, name));
     }

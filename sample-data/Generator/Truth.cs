@@ -1,0 +1,23 @@
+namespace SampleDay;
+
+/// <summary>Population means of a beam at the probe, inside the acceptance.</summary>
+/// <param name="Molecules">A shot, at mean yield.</param>
+/// <param name="MeanSpeed">m/s.</param>
+/// <param name="Spread">Standard deviation, m/s.</param>
+/// <param name="BelowCapture">Molecules a shot below the speed asked for.</param>
+public sealed record Truth(double Molecules, double MeanSpeed, double Spread, double BelowCapture)
+{
+    public static Truth Of(Scene scene, Beam beam, bool on, double capture, int seed, int sample = 400_000)
+    {
+        var draw = new Draw(seed);
+        (double n, double sum, double squares, double below) = (0, 0, 0, 0);
+        for (int k = 0; k < sample; k++)
+        {
+            if (Flight.ToProbe(scene, Flight.Emit(scene, beam, draw), on) is not { } at) continue;
+            (n, sum, squares) = (n + 1, sum + at.Speed, squares + at.Speed * at.Speed);
+            if (at.Speed < capture) below++;
+        }
+        double mean = sum / n, factor = beam.Emitted / sample;
+        return new Truth(n * factor, mean, Math.Sqrt(squares / n - mean * mean), below * factor);
+    }
+}
