@@ -25,6 +25,8 @@ static class Equivalence
     {
         double room = (matters - Math.Abs(difference)) / OneSided;
         if (room <= 0) return "the difference is as large as what matters, yet may be chance: only more shots can tell";
+        if (room <= other && statistical > other)
+            return string.Create(CultureInfo.InvariantCulture, $"more shots first: chance alone still moves it by {statistical:G2}");
         if (room <= other) return "more shots would not decide: the uncertainty of apparatus and simulation is too large for a difference of this size";
         double factor = statistical * statistical / (room * room - other * other);
         return string.Create(CultureInfo.InvariantCulture, $"about {Math.Max(factor, 1.1):G2} times the shots would decide");

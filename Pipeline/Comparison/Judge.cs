@@ -13,19 +13,19 @@ public static class Judge
     {
         if (answers.Count == 0) return new Verdict(Judgement.Undecided, [noneBecause], []);
         double[] adjusted = MultipleComparisons.Holm([.. answers.Select(a => a.PValue)]);
-        JudgedAnswer[] judged = [.. answers.Select((a, i) => Decide(a, adjusted[i], level))];
+        JudgedAnswer[] judged = [.. answers.Select((a, i) => Decide(a, adjusted[i], level, answers.Count))];
         Judgement overall = judged.Any(j => j.Judgement == Judgement.Disagrees) ? Judgement.Disagrees
             : judged.All(j => j.Judgement == Judgement.Agrees) ? Judgement.Agrees : Judgement.Undecided;
         string[] reasons = [.. judged.Where(j => j.Judgement == overall).Select(j => j.Reason)];
         return new Verdict(overall, reasons, judged);
     }
 
-    static JudgedAnswer Decide(Answer answer, double adjusted, double level)
+    static JudgedAnswer Decide(Answer answer, double adjusted, double level, int count)
     {
         string head = $"{answer.Condition}, {answer.Question}: {answer.Finding}";
         if (adjusted < level)
             return new JudgedAnswer(answer, adjusted, Judgement.Disagrees, string.Create(CultureInfo.InvariantCulture,
-                $"{head}; chance alone does this once in {1 / Math.Max(adjusted, 1e-300):G2} runs or less"));
+                $"{head}; p = {adjusted:G2} after correction for {count} questions"));
         return answer.WouldHaveShown
             ? new JudgedAnswer(answer, adjusted, Judgement.Agrees, $"{head}; a difference that matters would have shown")
             : new JudgedAnswer(answer, adjusted, Judgement.Undecided, $"{head}; {answer.WhatWouldDecide}");

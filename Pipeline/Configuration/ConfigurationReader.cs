@@ -36,10 +36,10 @@ public static class ConfigurationReader
             return null;
         }
         var files = new SortedSet<string>(StringComparer.Ordinal) { Apparatus, Night };
-        var (shots, molecules) = ReadLayouts(folder, files, faults);
+        var (shots, molecules, broken) = ReadLayouts(folder, files, faults);
         var setup = Try(faults, () => ApparatusReader.Read(TomlFile.Read(folder, Apparatus), (root, name) => SpeciesOf(folder, root, name, files)));
         var choices = new NightChoices([.. BackgroundModels.All.Select(b => b.Name)], SpectrumEstimatorNames.All, [.. ResponseModes.All.Select(m => m.Name)],
-            shots.Keys, molecules.Keys, setup?.Conditions.Keys.ToArray() ?? []);
+            [.. shots.Keys, .. broken], [.. molecules.Keys, .. broken], setup?.Conditions.Keys.ToArray() ?? []);
         if (setup is null) return null;
         var night = Try(faults, () => Tuple.Create(NightReader.Read(TomlFile.Read(folder, Night), choices)));
         if (night is null || faults.Count > 0) return null;
@@ -50,12 +50,14 @@ public static class ConfigurationReader
         };
     }
 
-    static (Dictionary<string, ShotFileLayout>, Dictionary<string, MoleculeFileLayout>) ReadLayouts(string folder, SortedSet<string> files, List<Fault> faults)
+    /// <summary>Layouts by name, and the names of those with a fault: a rule that names one of these is not at fault itself.</summary>
+    static (Dictionary<string, ShotFileLayout>, Dictionary<string, MoleculeFileLayout>, List<string> Broken) ReadLayouts(string folder, SortedSet<string> files, List<Fault> faults)
     {
         var shots = new Dictionary<string, ShotFileLayout>(StringComparer.Ordinal);
         var molecules = new Dictionary<string, MoleculeFileLayout>(StringComparer.Ordinal);
         string below = Path.Combine(folder, "layouts");
-        if (!Directory.Exists(below)) return (shots, molecules);
+        var broken = new List<string>();
+        if (!Directory.Exists(below)) return (shots, molecules, broken);
         foreach (string path in Directory.GetFiles(below, "*.toml").Order(StringComparer.Ordinal))
         {
             string relative = $"layouts/{Path.GetFileName(path)}", name = Path.GetFileNameWithoutExtension(path);
@@ -63,8 +65,9 @@ public static class ConfigurationReader
             object? layout = Try(faults, () => LayoutReader.Read(TomlFile.Read(folder, relative), name));
             if (layout is ShotFileLayout shot) shots[name] = shot;
             else if (layout is MoleculeFileLayout list) molecules[name] = list;
+            else broken.Add(name);
         }
-        return (shots, molecules);
+        return (shots, molecules, broken);
     }
 
     static Apparatus.Species SpeciesOf(string folder, TomlTable root, string name, SortedSet<string> files)

@@ -52,7 +52,7 @@ static class TomlFile
             string[] path = PathOf(item.Key!);
             TomlTable at = table;
             foreach (string part in path[..^1]) at = at.Child(part, Place(name, item.Key!.Span));
-            at.Set(path[^1], new TomlValue(Content(item.Value!, at.NameOf(path[^1]), name), Place(name, item.Value!.Span)), Place(name, item.Key!.Span));
+            at.Set(path[^1], new TomlValue(Content(item.Value!, at.PathOf(path[^1]), name), Place(name, item.Value!.Span)), Place(name, item.Key!.Span));
         }
     }
 

@@ -16,6 +16,9 @@ sealed class TomlTable(TomlPlace place, string path)
     /// <summary>"[probe] width".</summary>
     public string NameOf(string key) => path.Length == 0 ? key : $"[{path}] {key}";
 
+    /// <summary>"probe.width": the path of a table below this one.</summary>
+    public string PathOf(string key) => path.Length == 0 ? key : $"{path}.{key}";
+
     public void Set(string key, TomlValue value, TomlPlace at)
     {
         if (!_values.TryAdd(key, (value, at)))
@@ -27,7 +30,7 @@ sealed class TomlTable(TomlPlace place, string path)
     {
         if (!_values.TryGetValue(key, out var found))
         {
-            var child = new TomlTable(at, path.Length == 0 ? key : $"{path}.{key}");
+            var child = new TomlTable(at, PathOf(key));
             _values[key] = (new TomlValue(child, at), at);
             return child;
         }
@@ -45,7 +48,7 @@ sealed class TomlTable(TomlPlace place, string path)
         if (!_values.TryGetValue(key, out var found)) _values[key] = found = (new TomlValue(new List<TomlTable>(), at), at);
         if (found.Value.Content is not List<TomlTable> list)
             throw new DataFaultException(at.At(NameOf(key)), "a list of tables and a value of the same name", "one of them", "rename the table");
-        list.Add(new TomlTable(at, path.Length == 0 ? key : $"{path}.{key}"));
+        list.Add(new TomlTable(at, PathOf(key)));
         return list[^1];
     }
 
@@ -116,7 +119,7 @@ sealed class TomlTable(TomlPlace place, string path)
         {
             string member = e.ParamName ?? "", key = keyOf is not null && keyOf.TryGetValue(member, out string? named) ? named : SnakeCase(member);
             TomlPlace at = _values.TryGetValue(key, out var found) ? found.Value.Place : place;
-            string text = e.Message.Split('\n', '(')[0].Trim();
+            string text = e.Message.Split(" (Parameter", StringSplitOptions.None)[0].Trim();
             throw new DataFaultException(at.At(NameOf(key)), Convert.ToString(e.ActualValue, CultureInfo.InvariantCulture) ?? "", $"a value that {text}", "correct the value");
         }
     }

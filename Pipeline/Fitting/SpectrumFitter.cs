@@ -80,7 +80,7 @@ public static class SpectrumFitter
     }
 }
 
-/// <summary>The response, and the same for every nuisance moved by plus and minus one standard deviation.</summary>
+/// <summary>The response, and the same for every nuisance that moves it, by plus and minus one standard deviation.</summary>
 sealed class ShiftedResponses
 {
     public ShiftedResponses(Setup setup, Func<Setup, ResponseMatrix> build)
@@ -89,7 +89,7 @@ sealed class ShiftedResponses
         IReadOnlyList<Nuisance> nuisances = Nuisances.Of(setup);
         var pairs = new (string, ResponseMatrix?, ResponseMatrix?)[nuisances.Count];
         Parallel.For(0, pairs.Length, k => pairs[k] = (nuisances[k].Name, Try(nuisances[k], 1), Try(nuisances[k], -1)));
-        Pairs = pairs;
+        Pairs = [.. pairs.Where(p => !(p.Item2?.SameAs(Main) ?? false) || !(p.Item3?.SameAs(Main) ?? false))];
 
         // a fact that is uncertain by more than itself cannot be moved that far down: the other side then stands for both
         ResponseMatrix? Try(Nuisance nuisance, double k)

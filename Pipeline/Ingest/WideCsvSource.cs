@@ -1,5 +1,6 @@
 using System.Globalization;
 using Pipeline.Apparatus;
+using Pipeline.Quantities;
 using Pipeline.Reduction;
 
 namespace Pipeline.Ingest;
@@ -136,7 +137,7 @@ sealed class WideCsvSource : IShotSource
         }
         if (times.Count < 2) throw new DataFaultException(_name, $"{times.Count} rows", "two or more sampling times", "export the file again");
         double step = Rounded((times[^1] - times[0]) / (times.Count - 1), times);
-        return new TimeScan(times.Count, times[0] * _layout.TimeFactor, step * _layout.TimeFactor, whole);
+        return new TimeScan(times.Count, UnitTable.ToSi(times[0], _layout.TimeFactor), UnitTable.ToSi(step, _layout.TimeFactor), whole);
     }
 
     /// <summary>The sampling interval as printed: nine digits, if all times agree with it to 1 % of a step.</summary>

@@ -23,8 +23,9 @@ public static partial class QuantityText
         if (match.Groups["last"].Success) sigma = InLastDigits(digits, match.Groups["last"].Value, exponent);
         else if (match.Groups["sigma"].Success) sigma = Number(match.Groups["sigma"].Value);
         if (sigma < 0) throw new FormatException("an uncertainty that is not negative");
-        if (!double.IsFinite(value * factor) || !double.IsFinite(sigma * factor)) throw new FormatException("a finite number");
-        return new Measured(value * factor, sigma * factor);
+        (value, sigma) = (UnitTable.ToSi(value, factor), UnitTable.ToSi(sigma, factor));
+        if (!double.IsFinite(value) || !double.IsFinite(sigma)) throw new FormatException("a finite number");
+        return new Measured(value, sigma);
     }
 
     /// <summary>"0.4500(9)": the digits in brackets count in units of the last digit of the value.</summary>

@@ -30,6 +30,14 @@ static class UnitTable
     public static bool TryFind(Dimension dimension, string unit, out double factor) =>
         Units[dimension].TryGetValue(unit.Replace('µ', 'u').Replace('μ', 'u'), out factor);
 
+    /// <summary>A value in SI units. Decimal fractions are divided by their whole inverse, so that 10 us is the double nearest to 1e-5 and
+    /// not the one below it.</summary>
+    public static double ToSi(double value, double factor)
+    {
+        double inverse = Math.Round(1 / factor);
+        return factor < 1 && 1 / inverse == factor ? value / inverse : value * factor;
+    }
+
     /// <summary>Units of a dimension, as they are typed.</summary>
     public static string Accepted(Dimension dimension) =>
         string.Join(", ", Units[dimension].Keys.Select(u => u.Length == 0 ? "no unit" : u));

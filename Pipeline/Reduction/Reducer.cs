@@ -138,7 +138,7 @@ sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector
         int[] nothing = new int[shape.Samples];
         foreach (ShotInfo shot in shots) Group(shot).Add(nothing, Probe(shot), Ablation(shot));
         _remarks.Add(string.Create(CultureInfo.InvariantCulture,
-            $"{shots.Count} records without a single count were kept: only {expected:F1} steady counts are expected in one"));
+            $"{shots.Count} {(shots.Count == 1 ? "record" : "records")} of {shots[0].Condition} without a single count kept: with about {expected:F1} steady counts expected in one, none is no sign of a missing trigger"));
     }
 
     /// <summary>Counts a record would hold if all of it were like the time before the trigger.</summary>

@@ -38,6 +38,14 @@ public sealed class ResponseMatrix
     /// <summary>Counts for each molecule of a cell, over all bins.</summary>
     public double Sum(int cell) => _columns[cell].Sum();
 
+    /// <summary>Whether another matrix of the same shape holds the same numbers.</summary>
+    public bool SameAs(ResponseMatrix other)
+    {
+        for (int c = 0; c < _columns.Length; c++)
+            if (_first[c] != other._first[c] || !_columns[c].AsSpan().SequenceEqual(other._columns[c])) return false;
+        return true;
+    }
+
     /// <summary>Expected counts: matrix times molecules.</summary>
     /// <param name="molecules">[cells].</param>
     /// <returns>[bins].</returns>
