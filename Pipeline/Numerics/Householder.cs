@@ -15,8 +15,7 @@ static class Householder
     {
         for (int k = 0; k < columns; k++)
         {
-            double norm = 0;
-            for (int i = k; i < rows; i++) norm = double.Hypot(norm, a[i * columns + k]);
+            double norm = ColumnNorm(a, k, rows, columns);
             if (norm == 0) continue;
             double alpha = a[k * columns + k] > 0 ? -norm : norm;
             a[k * columns + k] -= alpha;
@@ -34,6 +33,16 @@ static class Householder
             x[k] = pivot == 0 ? 0 : sum / pivot;
         }
         return x;
+    }
+
+    /// <summary>Scaled by the largest element, so that squares neither overflow nor vanish.</summary>
+    static double ColumnNorm(double[] a, int k, int rows, int columns)
+    {
+        (double largest, double sum) = (0, 0);
+        for (int i = k; i < rows; i++) largest = Math.Max(largest, Math.Abs(a[i * columns + k]));
+        if (largest == 0) return 0;
+        for (int i = k; i < rows; i++) sum += a[i * columns + k] / largest * (a[i * columns + k] / largest);
+        return largest * Math.Sqrt(sum);
     }
 
     /// <summary>Applies I - beta v v^T, v the part of column k from row k on, to one column of another array.</summary>

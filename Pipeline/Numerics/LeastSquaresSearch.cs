@@ -6,7 +6,7 @@ sealed class LeastSquaresSearch
     readonly ResidualFunction _residual;
     readonly int _n, _p;
     readonly double[]? _low, _high;
-    readonly double[] _x, _trial, _r, _trialR, _j, _scale, _step;
+    readonly double[] _x, _trial, _r, _trialR, _j, _scale, _step, _a, _b;
     double _sum, _damping = 1e-3, _growth = 2;
     int _accepted;
     bool _converged;
@@ -17,6 +17,7 @@ sealed class LeastSquaresSearch
         _x = [.. start];
         (_trial, _scale, _step) = (new double[_p], new double[_p], new double[_p]);
         (_r, _trialR, _j) = (new double[_n], new double[_n], new double[_n * _p]);
+        (_a, _b) = (new double[(_n + _p) * _p], new double[_n + _p]);
         Project(_x);
         _residual(_x, _r, _j);
         _sum = Cholesky.Dot(_r, _r);
@@ -114,15 +115,15 @@ sealed class LeastSquaresSearch
     {
         int[] free = [.. Enumerable.Range(0, _p).Where(k => !held[k])];
         int m = free.Length;
-        var a = new double[(_n + m) * m];
-        var b = new double[_n + m];
         for (int i = 0; i < _n; i++)
         {
-            for (int k = 0; k < m; k++) a[i * m + k] = _j[i * _p + free[k]];
-            b[i] = -_r[i];
+            for (int k = 0; k < m; k++) _a[i * m + k] = _j[i * _p + free[k]];
+            _b[i] = -_r[i];
         }
-        for (int k = 0; k < m; k++) a[(_n + k) * m + k] = Math.Sqrt(_damping) * _scale[free[k]];
-        double[] s = Householder.Solve(a, b, _n + m, m);
+        _a.AsSpan(_n * m, m * m).Clear();
+        _b.AsSpan(_n).Clear();
+        for (int k = 0; k < m; k++) _a[(_n + k) * m + k] = Math.Sqrt(_damping) * _scale[free[k]];
+        double[] s = Householder.Solve(_a, _b, _n + m, m);
         Array.Clear(_step);
         for (int k = 0; k < m; k++) _step[free[k]] = s[k];
         double linear = 0;

@@ -33,7 +33,8 @@ sealed class ArrivalCells
     readonly double[] _edges;
     readonly DetectionYield _yield;
     readonly TransitProfile _transit;
-    readonly double _emissionLength;
+    readonly double _detail;
+    ArrivalFront _slow, _fast;
 
     public ArrivalCells(Setup setup, FlightMap flight, SignalAxis axis)
     {
@@ -42,59 +43,84 @@ sealed class ArrivalCells
         _edges = [.. axis.EdgesInSeconds().Select(e => e + setup.Beamline.TriggerOffset.Value)];
         _yield = new DetectionYield(setup);
         _transit = new TransitProfile(setup.Probe);
-        _emissionLength = _emission.Support.High - _emission.Support.Low;
+        _detail = Math.Max(0.1 * (_emission.Support.High - _emission.Support.Low), _edges[^1] * 1e-3);
+        (_slow, _fast) = (new ArrivalFront(_edges), new ArrivalFront(_edges));
     }
 
     /// <summary>[bins] counts for each molecule that is spread evenly over [from, to) m/s.</summary>
     public double[] Column(double from, double to)
     {
         var before = new double[_edges.Length];
-        double span = _flight.TimeFor(from) - _flight.TimeFor(to);
-        double detail = Math.Max(0.1 * _emissionLength, _edges[^1] * 1e-3);
-        int slices = Math.Clamp((int)Math.Ceiling(span / detail), SlicesAtLeast, SlicesAtMost);
-        for (int s = 0; s < slices; s++)
+        int slices = Math.Clamp((int)Math.Ceiling((_flight.TimeFor(from) - _flight.TimeFor(to)) / _detail), SlicesAtLeast, SlicesAtMost);
+        _slow.Move(from, _flight.TimeFor(from), _transit, _emission);
+        for (int s = 1; s <= slices; s++)
         {
-            double slow = from + (to - from) * s / slices, fast = from + (to - from) * (s + 1) / slices;
-            AddSlice(slow, fast, before, 1.0 / slices);
+            double fast = from + (to - from) * s / slices;
+            _fast.Move(fast, _flight.TimeFor(fast), _transit, _emission);
+            AddSlice(0.5 * (_slow.Speed + fast), 1.0 / slices, before);
+            (_slow, _fast) = (_fast, _slow);
         }
         var column = new double[_edges.Length - 1];
         for (int b = 0; b < column.Length; b++) column[b] = before[b + 1] - before[b];
         return column;
     }
 
-    /// <summary>Adds to each edge the counts that come before it.</summary>
-    void AddSlice(double slow, double fast, double[] before, double share)
+    /// <summary>Adds to each edge the counts that come before it, from molecules whose flight time is even between both fronts.</summary>
+    void AddSlice(double speed, double share, double[] before)
     {
-        double speed = 0.5 * (slow + fast), counts = share * _yield.CountsAt(speed);
-        double early = _flight.TimeFor(fast), late = _flight.TimeFor(slow);
+        double counts = share * _yield.CountsAt(speed);
         Span<double> weights = stackalloc double[TransitProfile.Count];
         _transit.Weights(_yield.PumpingAt(speed), weights);
         for (int k = 0; k < weights.Length; k++)
         {
-            double shift = _transit.Places[k] / speed;
-            AddPulse(early + shift, late + shift, counts * weights[k], before);
+            double part = counts * weights[k], early = _fast.Arrival(k), width = _slow.Arrival(k) - early;
+            int from = _fast.First(k), to = _slow.End(k);
+            for (int e = from; e < to; e++)
+            {
+                double arrived = width > 1e-12 ? (_fast.Integral(k, e) - _slow.Integral(k, e)) / width : _emission.CumulativeAt(_edges[e] - early);
+                before[e] += part * Math.Clamp(arrived, 0, 1);
+            }
+            for (int e = to; e < _edges.Length; e++) before[e] += part;
         }
     }
+}
 
-    /// <summary>Adds molecules whose flight time is even over [early, late).</summary>
-    void AddPulse(double early, double late, double counts, double[] before)
+/// <summary>Molecules of one speed: when they reach each place of the transit, and the integral of the pulse up to every edge. Shared by
+/// the slices on either side of the speed.</summary>
+sealed class ArrivalFront(double[] edges)
+{
+    readonly double[] _arrival = new double[TransitProfile.Count];
+    readonly int[] _first = new int[TransitProfile.Count], _end = new int[TransitProfile.Count];
+    readonly double[] _integral = new double[TransitProfile.Count * edges.Length];
+
+    public double Speed { get; private set; }
+    /// <summary>Flight time to a place, s.</summary>
+    public double Arrival(int place) => _arrival[place];
+    /// <summary>First edge after the start of the pulse.</summary>
+    public int First(int place) => _first[place];
+    /// <summary>First edge after its end.</summary>
+    public int End(int place) => _end[place];
+    /// <summary>Twice-integrated pulse at an edge, s.</summary>
+    public double Integral(int place, int edge) => _integral[place * edges.Length + edge];
+
+    public void Move(double speed, double flight, TransitProfile transit, EmissionProfile emission)
     {
-        (double low, double high) = _emission.Support;
-        int from = LowerBound(early + low), to = LowerBound(late + high);
-        double width = late - early;
-        for (int e = from; e < to; e++)
+        Speed = speed;
+        (double low, double high) = emission.Support;
+        for (int k = 0; k < _arrival.Length; k++)
         {
-            double share = width > 1e-12
-                ? (_emission.IntegratedCumulativeAt(_edges[e] - early) - _emission.IntegratedCumulativeAt(_edges[e] - late)) / width
-                : _emission.CumulativeAt(_edges[e] - early);
-            before[e] += counts * Math.Clamp(share, 0, 1);
+            double arrival = _arrival[k] = flight + transit.Places[k] / speed;
+            (_first[k], _end[k]) = (LowerBound(arrival + low), LowerBound(arrival + high));
+            Span<double> integral = _integral.AsSpan(k * edges.Length, edges.Length);
+            integral[.._first[k]].Clear();
+            for (int e = _first[k]; e < _end[k]; e++) integral[e] = emission.IntegratedCumulativeAt(edges[e] - arrival);
+            for (int e = _end[k]; e < edges.Length; e++) integral[e] = edges[e] - arrival - emission.MeanTime;
         }
-        for (int e = to; e < _edges.Length; e++) before[e] += counts;
     }
 
     int LowerBound(double time)
     {
-        int at = Array.BinarySearch(_edges, time);
+        int at = Array.BinarySearch(edges, time);
         return at >= 0 ? at : ~at;
     }
 }

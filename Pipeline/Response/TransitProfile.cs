@@ -8,7 +8,7 @@ namespace Pipeline.Response;
 /// R(z) exp(-integral of R up to z / (v n_max)).</remarks>
 public sealed class TransitProfile
 {
-    const int Nodes = 6;
+    const int Nodes = 4;
     static readonly GaussLegendreRule Rule = new(-1, 1, Nodes);
     readonly double[] _places = new double[Nodes];
     readonly double[] _light = new double[Nodes];
