@@ -31,7 +31,7 @@ static class BelowCaptureFinder
     /// <summary>Of the number below where the fit has one, else of the whole number: the efficiency is common to both.</summary>
     static double RelativeSystematic(EstimatorRun quoted, double[] share)
     {
-        Quantity below = quoted.Quantity(m => m.Zip(share, (n, s) => n * s).Sum()), all = quoted.Quantity(m => m.Sum());
+        Quantity below = quoted.Quantity(r => r.Molecules.Zip(share, (n, s) => n * s).Sum()), all = quoted.Quantity(r => r.Moments.Number);
         double whole = all.Value > 0 ? all.Systematic / all.Value : 0;
         return below.Value > 2 * below.Statistical ? Math.Max(whole, below.Systematic / below.Value) : whole;
     }

@@ -10,15 +10,15 @@ sealed class EstimatorRun
     readonly FitWindow _window;
     readonly VelocityGrid _grid;
     readonly FittedSpectrum _fit;
-    readonly double[][] _replicas;
-    readonly (string Name, double[]? Up, double[]? Down)[] _shifted;
+    readonly Refitted[] _replicas;
+    readonly (string Name, Refitted? Up, Refitted? Down)[] _shifted;
 
     public EstimatorRun(ISpectrumEstimator estimator, FitWindow window, ShiftedResponses responses, Replicas replicas, VelocityGrid grid)
     {
         (_estimator, _window, _grid) = (estimator, window, grid);
         _fit = estimator.Fit(window, responses.Main);
         _replicas = replicas.Map(w => _fit.Refit(w, responses.Main));
-        _shifted = new (string, double[]?, double[]?)[responses.Pairs.Count];
+        _shifted = new (string, Refitted?, Refitted?)[responses.Pairs.Count];
         Parallel.For(0, _shifted.Length, k =>
         {
             (string name, ResponseMatrix? up, ResponseMatrix? down) = responses.Pairs[k];
@@ -30,9 +30,9 @@ sealed class EstimatorRun
     public FittedSpectrum Main => _fit;
 
     /// <summary>A function of the spectrum with its errors.</summary>
-    public Quantity Quantity(Func<double[], double> of)
+    public Quantity Quantity(Func<Refitted, double> of)
     {
-        double value = of(_fit.Molecules);
+        double value = of(new Refitted(_fit.Molecules, _fit.Moments));
         double statistical = Math.Sqrt(Replicas.Variance([.. _replicas.Select(of)]));
         return Fitting.Quantity.Of(value, statistical, [.. _shifted.Select(s => new BudgetLine(s.Name, Shift(s.Up, s.Down, of, value)))]);
     }
@@ -40,25 +40,29 @@ sealed class EstimatorRun
     public VelocitySpectrum ToSpectrum(NetSignal signal, string? weak)
     {
         Quantity Moment(Func<SpectrumMoments, double> of) => weak is not null
-            ? Fitting.Quantity.NotDetermined(weak) : Quantity(m => of(SpectrumMoments.Of(_grid, m)));
+            ? Fitting.Quantity.NotDetermined(weak) : Undefined(of(_fit.Moments)) ?? Quantity(r => of(r.Moments));
         return new VelocitySpectrum
         {
             Estimator = _estimator.Name,
             Description = _fit.Description,
             Grid = _grid,
             Molecules = _fit.Molecules,
-            Statistical = [.. Enumerable.Range(0, _grid.Cells).Select(c => Math.Sqrt(Replicas.Variance([.. _replicas.Select(r => r[c])])))],
-            Systematic = [.. Enumerable.Range(0, _grid.Cells).Select(c => Math.Sqrt(_shifted.Sum(s => Square(Shift(s.Up, s.Down, m => m[c], _fit.Molecules[c])))))],
+            Statistical = [.. Enumerable.Range(0, _grid.Cells).Select(c => Math.Sqrt(Replicas.Variance([.. _replicas.Select(r => r.Molecules[c])])))],
+            Systematic = [.. Enumerable.Range(0, _grid.Cells).Select(c => Math.Sqrt(_shifted.Sum(s => Square(Shift(s.Up, s.Down, r => r.Molecules[c], _fit.Molecules[c])))))],
             Refolded = Refolded(signal),
             Resolution = _fit.Resolution,
             Deviance = _fit.Deviance,
             DegreesOfFreedom = _fit.DegreesOfFreedom,
             Doubt = _fit.Doubt,
-            Number = Quantity(m => m.Sum()),
+            Number = Quantity(r => r.Moments.Number),
             Mean = Moment(m => m.Mean),
             Spread = Moment(m => m.Spread),
         };
     }
+
+    /// <summary>Noise can outweigh a weak signal far from its middle: then there is no width.</summary>
+    static Quantity? Undefined(double value) =>
+        double.IsFinite(value) ? null : Fitting.Quantity.NotDetermined("noise far from the beam outweighs its width");
 
     double[] Refolded(NetSignal signal)
     {
@@ -69,10 +73,10 @@ sealed class EstimatorRun
     }
 
     /// <summary>Half the difference of both sides, with half of what they share beside it: an effect that is the same for both signs counts.</summary>
-    static double Shift(double[]? up, double[]? down, Func<double[], double> of, double value)
+    static double Shift(Refitted? up, Refitted? down, Func<Refitted, double> of, double value)
     {
-        double plus = (up is null ? down is null ? value : 2 * value - of(down) : of(up)) - value;
-        double minus = (down is null ? 2 * value - of(up!) : of(down)) - value;
+        double plus = (up is null ? down is null ? value : 2 * value - of(down.Value) : of(up.Value)) - value;
+        double minus = (down is null ? 2 * value - of(up!.Value) : of(down.Value)) - value;
         double odd = 0.5 * (plus - minus), even = 0.5 * (plus + minus);
         return (odd < 0 ? -1 : 1) * double.Hypot(odd, even);
     }

@@ -16,6 +16,8 @@ abstract class FittedSpectrum
 {
     /// <summary>[cells] molecules a shot.</summary>
     public required double[] Molecules { get; init; }
+    /// <summary>Number, mean and spread as this estimator quotes them.</summary>
+    public required SpectrumMoments Moments { get; init; }
     /// <summary>[window bins] expected totals with background and fitted causes.</summary>
     public required double[] Means { get; init; }
     public required double Deviance { get; init; }
@@ -28,9 +30,14 @@ abstract class FittedSpectrum
     /// <summary>[cells][cells] how a true spectrum appears; null where the estimator has none.</summary>
     public double[][]? Resolution { get; init; }
 
-    /// <summary>Molecules from other data, or another response, with everything chosen as in this fit.</summary>
-    public abstract double[] Refit(FitWindow window, ResponseMatrix response);
+    /// <summary>The result from other data, or another response, with everything chosen as in this fit.</summary>
+    public abstract Refitted Refit(FitWindow window, ResponseMatrix response);
 }
+
+/// <summary>What a repeated fit gives.</summary>
+/// <param name="Molecules">[cells] molecules a shot.</param>
+/// <param name="Moments">Number, mean and spread as this estimator quotes them.</param>
+readonly record struct Refitted(double[] Molecules, SpectrumMoments Moments);
 
 /// <summary>Every estimator. To add one, write its file and add its line.</summary>
 static class SpectrumEstimators

@@ -22,27 +22,33 @@ sealed class ShapeEstimator : ISpectrumEstimator
         return new ShapeSpectrum(fit.Parameters)
         {
             Molecules = molecules,
+            Moments = SpectrumMoments.Of(response.Grid, molecules),
             Means = problem.Means(fit.Parameters),
             Deviance = fit.Deviance,
             DegreesOfFreedom = window.Count - 3,
-            Doubt = DoubtOf(fit),
+            Doubt = DoubtOf(fit, window.Count - 3),
             Description = string.Create(CultureInfo.InvariantCulture,
                 $"v^{Power} exp(-((v-u)/alpha)^2) with u = {fit.Parameters[1]:F1} m/s, alpha = {fit.Parameters[2]:F1} m/s"),
         };
     }
 
-    static string? DoubtOf(PoissonFit fit) =>
+    /// <summary>Deviances beyond this chance say that the shape is wrong.</summary>
+    const double PoorFit = 1e-4;
+
+    static string? DoubtOf(PoissonFit fit, int freedom) =>
         !fit.Converged ? "the shape fit did not converge"
         : fit.AtBound[1] || fit.AtBound[2] ? "the shape fit ran into a bound of its parameters"
+        : Tail.ChiSquare(fit.Deviance, freedom) < PoorFit ? "one supersonic beam does not describe the signal"
         : null;
 }
 
 sealed class ShapeSpectrum(double[] parameters) : FittedSpectrum
 {
-    public override double[] Refit(FitWindow window, ResponseMatrix response)
+    public override Refitted Refit(FitWindow window, ResponseMatrix response)
     {
         var problem = new ShapeProblem(window, response);
-        return problem.Molecules(problem.Find(problem.Adapt(parameters)).Parameters);
+        double[] molecules = problem.Molecules(problem.Find(problem.Adapt(parameters)).Parameters);
+        return new Refitted(molecules, SpectrumMoments.Of(response.Grid, molecules));
     }
 }
 
