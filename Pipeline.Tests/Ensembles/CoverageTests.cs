@@ -1,0 +1,65 @@
+using Pipeline.Analysis;
+using Pipeline.Apparatus;
+using Pipeline.Configuration;
+using Pipeline.Fitting;
+using Pipeline.Reduction;
+using Pipeline.Tests.Support;
+using SampleDay;
+using Xunit.Abstractions;
+
+namespace Pipeline.Tests.Ensembles;
+
+/// <summary>Intervals on an ensemble of runs made molecule by molecule and photon by photon, by code that shares nothing with the response.
+/// ARRIVALS_ENSEMBLE=400 runs the full one.</summary>
+public class CoverageTests(ITestOutputHelper output)
+{
+    static readonly int Runs = int.TryParse(Environment.GetEnvironmentVariable("ARRIVALS_ENSEMBLE"), out int n) ? n : 24;
+
+    [Fact]
+    public void Fit_FreeFlightEnsemble_PullsAreNormalAndCaptureIntervalsCover()
+    {
+        LabConfiguration lab = ConfigurationReader.Read(Path.Combine(Repository.Root, "config"));
+        FitSettings fit = lab.Analysis.Fit;
+        var settings = new AnalysisSettings
+        {
+            Background = "steady", Reduction = new ReductionSettings { ShotsPerBlock = 5 }, Comparison = lab.Analysis.Comparison,
+            Fit = new FitSettings { FromSeconds = fit.FromSeconds, VelocityFrom = fit.VelocityFrom, VelocityTo = fit.VelocityTo, VelocityStep = 4, Replicas = 60 },
+        };
+        // nature is what the lab notes, so that only statistical errors are at work
+        var (scene, beam) = (new Scene(), Day.Usual);
+        var plan = new RunPlan { Conditions = ["off"], Signal = 60, NoAblation = 20, ProbeBlocked = 10, Dark = 8, Step = 20e-6, Samples = 2050 };
+        Truth truth = Truth.Of(scene, beam, false, lab.Setup.CaptureSpeed, 5);
+        var pulls = (Number: new double[Runs], Mean: new double[Runs], Spread: new double[Runs]);
+        int below = 0;
+        for (int k = 0; k < Runs; k++)
+        {
+            SpectrumOutcome found = RunAnalysis.Fit(Reduce(Simulate.Run(scene, beam, plan, 1000 + k), plan, lab.Setup, settings), "arrival", lab.Setup, settings).Single();
+            pulls.Number[k] = (found.Number.Value - truth.Molecules) / found.Number.Statistical;
+            pulls.Mean[k] = (found.Mean.Value - truth.MeanSpeed) / found.Mean.Statistical;
+            pulls.Spread[k] = (found.Spread.Value - truth.Spread) / found.Spread.Statistical;
+            if (found.Below.Interval!.Value.Contains(truth.BelowCapture)) below++;
+        }
+        Check("number", pulls.Number);
+        Check("mean velocity", pulls.Mean);
+        Check("spread", pulls.Spread);
+        output.WriteLine($"below capture: {below} of {Runs} intervals of 90 % hold the truth");
+        Assert.True(below >= 0.9 * Runs - 3 * Math.Sqrt(0.09 * Runs), $"{below} of {Runs}");
+    }
+
+    /// <summary>Mean within four standard errors of zero, width within four of one.</summary>
+    void Check(string name, double[] pulls)
+    {
+        double mean = pulls.Average(), width = Math.Sqrt(pulls.Sum(p => (p - mean) * (p - mean)) / (pulls.Length - 1));
+        output.WriteLine($"{name}: mean pull {mean:F2}, width {width:F2}, {pulls.Count(p => Math.Abs(p) < 1)} of {pulls.Length} within one");
+        Assert.InRange(mean, -4 / Math.Sqrt(pulls.Length), 4 / Math.Sqrt(pulls.Length));
+        Assert.InRange(width, 1 - 4 / Math.Sqrt(2.0 * pulls.Length), 1 + 4 / Math.Sqrt(2.0 * pulls.Length));
+    }
+
+    static BinnedRun Reduce(IReadOnlyList<Shot> shots, RunPlan plan, Setup setup, AnalysisSettings settings)
+    {
+        var shape = new RecordShape { Shots = shots.Count, Samples = plan.Samples, OriginSeconds = plan.Start, TickSeconds = plan.Step, Kind = DetectorKind.Counting };
+        ShotInfo[] infos = [.. shots.Select(s => new ShotInfo(s.Number, (ShotKind)s.Kind, s.Condition, s.ProbeMonitor, s.AblationMonitor, s.Detuning))];
+        int[] codes = [.. shots.SelectMany(s => s.Counts.Select(c => (int)c))];
+        return Reducer.Reduce(shape, infos, [new ShotBlock(0, infos, codes)], setup.Detector, settings.Reduction);
+    }
+}
