@@ -111,6 +111,20 @@ public sealed class ReadingTests : IDisposable
         Assert.Throws<DataFaultException>(() => file.Shape("a").Elements == ElementKind.Integer ? file.ReadIntegers("a", 0, 2).Length : file.ReadReals("a", 0, 2).Length);
     }
 
+    [SkippableTheory]
+    [InlineData("earliest", 3)]
+    [InlineData("latest", 3)]
+    [InlineData("latest", 40)]
+    public void Open_SoftLinkLoop_IsRefusedAndDoesNotEndTheProgram(string version, int links)
+    {
+        const string Python = "/usr/bin/python3";
+        Skip.IfNot(File.Exists(Python) && Exit(Python, "import h5py") == 0, "no Python with h5py on this machine");
+        string path = Path.Combine(_folder, "loop.h5");
+        Assert.Equal(0, Exit(Python, $"import h5py\nf = h5py.File(r'{path}', 'w', libver='{version}')\nfor k in range({links}): f['g%d' % k] = [1, 2]\n"
+            + "f['fluorescence'] = h5py.SoftLink('/b')\nf['b'] = h5py.SoftLink('/fluorescence')\nf.close()"));
+        Assert.Contains("soft links", Assert.Throws<DataFaultException>(() => Hdf5Files.Open(path)).Fault.Found, StringComparison.Ordinal);
+    }
+
     static int Exit(string program, string script)
     {
         using Process process = Process.Start(new ProcessStartInfo(program, ["-c", script]) { RedirectStandardError = true, UseShellExecute = false })!;

@@ -9,6 +9,10 @@ public static class Hdf5Files
     public static IHdf5File Open(string path)
     {
         CheckSuperblock(path);
+        using (FileStream file = File.OpenRead(path))
+            if (SoftLinkScan.Finds(file))
+                throw new DataFaultException(Path.GetFileName(path), "soft links", "a file without soft links: a loop of them cannot be told from others in time",
+                    "write the file without them, or copy it with the links resolved");
         return new ManagedHdf5File(path);
     }
 
