@@ -50,6 +50,20 @@ public sealed class ReadingTests : IDisposable
     }
 
     [Fact]
+    public void ReadBlocks_SmallHdf5Blocks_GiveTheSameInWholeChunks()
+    {
+        var plan = Plan with { Signal = 40 };
+        IReadOnlyList<Shot> shots = Simulate.Run(new Scene(), Day.Usual, plan, 4);
+        string path = Path.Combine(_folder, "run.h5");
+        Writers.Hdf5(path, plan, shots);
+        using var source = new Hdf5MatrixSource(path, (Hdf5MatrixLayout)LabFile.Matrix, DetectorKind.Counting, blockSamples: 20 * 500);
+        var blocks = source.ReadBlocks().ToList();
+        // chunks of 16 shots: a block of 20 shots holds one
+        Assert.Equal([16, 16, 16, 16, 16, 14], blocks.Select(b => b.Shots.Count));
+        Assert.Equal(shots.SelectMany(s => s.Counts.Select(c => (int)c)), blocks.SelectMany(b => b.Codes!));
+    }
+
+    [Fact]
     public void Write_SameRunTwice_GivesTheSameBytes()
     {
         foreach (string name in (string[])["a.h5", "b.h5"]) Writers.Hdf5(Path.Combine(_folder, name), Plan, Simulate.Run(new Scene(), Day.Usual, Plan, 4));

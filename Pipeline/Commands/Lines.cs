@@ -3,6 +3,7 @@ using Pipeline.Analysis;
 using Pipeline.Comparison;
 using Pipeline.Fitting;
 using Pipeline.Reduction;
+using Pipeline.Reports;
 
 namespace Pipeline.Commands;
 
@@ -16,7 +17,7 @@ static class Lines
         Say($"shots: {run.ShotsRead} read, {cut} cut{why}{(reused ? "; reused from an earlier ingest" : "")}");
     }
 
-    public static void Numbers(SpectrumOutcome fit, bool reused)
+    public static void Fitted(SpectrumOutcome fit, bool reused)
     {
         Say($"{fit.Signal.Condition}{(reused ? ", reused from an earlier fit" : "")}:");
         Say($"  molecules a shot  {Text(fit.Number, "")}");
@@ -35,10 +36,10 @@ static class Lines
     public static void Row(RunOutcome run)
     {
         foreach (ConditionOutcome c in run.Conditions)
-            Say($"  {run.Name,-18} {c.Name,-6} {Short(c.Fit.Number),-18} {Short(c.Fit.Mean),-16} {BelowShort(c.Fit.Below),-16} {Word(run.Verdict.Judgement)}");
+            Say($"  {run.Name,-18} {c.Name,-6} {Numbers.WithTotal(c.Fit.Number),-16} {Numbers.WithTotal(c.Fit.Mean),-15} {BelowShort(c.Fit.Below),-16} {Word(run.Verdict.Judgement)}");
     }
 
-    public static string Head => $"  {"run",-18} {"cond.",-6} {"molecules/shot",-18} {"mean m/s",-16} {"below capture",-16} verdict";
+    public static string Head => $"  {"run",-18} {"cond.",-6} {"molecules/shot",-16} {"mean m/s",-15} {"below capture",-16} verdict";
 
     public static string Word(Judgement judgement) => judgement switch
     {
@@ -47,15 +48,12 @@ static class Lines
         _ => "is undecided",
     };
 
-    static string Text(Quantity q, string unit) => q.NotDeterminedBecause is { } because ? $"not determined: {because}"
-        : Format($"{q.Value:G5} ± {q.Statistical:G2} (statistical) ± {q.Systematic:G2} (systematic){unit}");
+    static string Text(Quantity q, string unit) => q.NotDeterminedBecause is { } because ? $"not determined: {because}" : Numbers.WithErrors(q) + unit;
 
     static string Below(BelowCapture b) => b.NotDeterminedBecause is { } because ? $"not determined: {because}"
-        : Format($"{b.Value:G3}, {100 * b.Interval!.Value.Confidence:G3} % interval {b.Interval.Value.Low:G3} to {b.Interval.Value.High:G3} molecules a shot");
+        : Format($"{Numbers.Digits(b.Value)}, {100 * b.Interval!.Value.Confidence:G3} % interval {Numbers.Digits(b.Interval.Value.Low)} to {Numbers.Digits(b.Interval.Value.High)} molecules a shot");
 
-    static string Short(Quantity q) => q.NotDeterminedBecause is null ? Format($"{q.Value:G5} ± {q.Total:G2}") : "not determined";
-
-    static string BelowShort(BelowCapture b) => b.Interval is { } i ? Format($"{i.Low:G3} to {i.High:G3}") : "not determined";
+    static string BelowShort(BelowCapture b) => b.Interval is { } i ? $"{Numbers.Digits(i.Low)} to {Numbers.Digits(i.High)}" : "not determined";
 
     static string Format(FormattableString text) => text.ToString(CultureInfo.InvariantCulture);
 

@@ -21,7 +21,7 @@ static class StageCommands
     {
         BinnedRun run = work.Ingest(out bool before);
         Lines.Shots(run, before);
-        foreach (SpectrumOutcome fit in work.Fit(run, out bool reused)) Lines.Numbers(fit, reused);
+        foreach (SpectrumOutcome fit in work.Fit(run, out bool reused)) Lines.Fitted(fit, reused);
         return 0;
     });
 
@@ -30,7 +30,7 @@ static class StageCommands
         BinnedRun run = work.Ingest(out bool before);
         Lines.Shots(run, before);
         IReadOnlyList<SpectrumOutcome> fits = work.Fit(run, out bool reused);
-        foreach (SpectrumOutcome fit in fits) Lines.Numbers(fit, reused);
+        foreach (SpectrumOutcome fit in fits) Lines.Fitted(fit, reused);
         RunOutcome outcome = work.Compare(run, fits);
         Lines.Verdict(outcome);
         return outcome.Verdict.Judgement == Comparison.Judgement.Agrees ? CommandLine.AllAgree : CommandLine.SomeDoNot;

@@ -9,15 +9,17 @@ namespace Pipeline.Ingest;
 sealed class Hdf5MatrixSource : IShotSource
 {
     /// <summary>Samples in a block, about; 64 MB as 32-bit integers.</summary>
-    const int BlockSamples = 16_000_000;
+    const int DefaultBlock = 16_000_000;
+    readonly int _blockSamples;
     readonly IHdf5File _file;
     readonly Hdf5MatrixLayout _layout;
     readonly string _name;
     readonly ShotInfo[] _shots;
     readonly DatasetShape _data;
 
-    public Hdf5MatrixSource(string path, Hdf5MatrixLayout layout, DetectorKind kind)
+    public Hdf5MatrixSource(string path, Hdf5MatrixLayout layout, DetectorKind kind, int blockSamples = DefaultBlock)
     {
+        _blockSamples = blockSamples;
         (_layout, _name, InputFiles) = (layout, Path.GetFileName(path), [path]);
         _file = Hdf5Files.Open(path);
         try
@@ -42,7 +44,7 @@ sealed class Hdf5MatrixSource : IShotSource
 
     public IEnumerable<ShotBlock> ReadBlocks()
     {
-        int chunk = _data.RowsPerChunk, rows = Math.Max(1, BlockSamples / Shape.Samples / chunk) * chunk;
+        int chunk = _data.RowsPerChunk, rows = Math.Max(1, _blockSamples / Shape.Samples / chunk) * chunk;
         for (int first = 0; first < Shape.Shots; first += rows)
         {
             int count = Math.Min(rows, Shape.Shots - first);

@@ -1,5 +1,6 @@
 using Pipeline.Analysis;
 using Pipeline.Configuration;
+using Pipeline.Reports;
 using Pipeline.Results;
 using Serilog;
 
@@ -22,7 +23,7 @@ public static class NightWork
             try
             {
                 done[k] = Analyse(lab, day, run, results);
-                log.Information("{Run}: {Judgement}", run.Name, done[k]!.Verdict.Judgement);
+                log.Information("{Run}: {Judgement}", run.Name, Words.Of(done[k]!.Verdict.Judgement));
             }
             catch (DataFaultException e)
             {
