@@ -31,11 +31,12 @@ public sealed class DayFolder
     {
         if (!Directory.Exists(path)) throw new DataFaultException(path, "no such folder", "a day's folder with shot files", "check the name");
         string[] files = [.. Directory.GetFiles(path).Select(f => System.IO.Path.GetFileName(f)).Where(f => f[0] != '.').Order(StringComparer.Ordinal)];
-        RunFile[] runs = [.. files.Select(f => RunOf(path, f, lab)).OfType<RunFile>()];
+        var predictions = lab.Predictions.Select(p => p.File).ToHashSet(StringComparer.Ordinal);
+        RunFile[] runs = [.. files.Where(f => !predictions.Contains(f)).Select(f => RunOf(path, f, lab)).OfType<RunFile>()];
         foreach (var same in runs.GroupBy(r => r.Name, StringComparer.Ordinal).Where(g => g.Count() > 1))
             throw new DataFaultException(path, $"two runs named {same.Key}: {string.Join(", ", same.Select(r => System.IO.Path.GetFileName(r.Path)))}", "one file a name", "rename one of them");
         var used = runs.SelectMany(r => Companions(r)).ToHashSet(StringComparer.Ordinal);
-        return new DayFolder(path, runs, [.. files.Where(f => !used.Contains(f))]);
+        return new DayFolder(path, runs, [.. files.Where(f => !used.Contains(f) && !predictions.Contains(f))]);
     }
 
     /// <summary>The run of this name, with or without extension.</summary>

@@ -22,7 +22,11 @@ static class ConditionFigures
         var values = net.Where((_, i) => shown[i]).Concat((fit ?? []).Where((_, i) => shown[i])).Concat((predicted ?? []).Where((_, i) => shown[i]));
         SvgFigure figure = new SvgFigure($"Signal of condition {c.Name} against arrival time", range, "time after trigger (ms)")
             .Panel(270, Axis.Around(values), "counts per shot and ms", last: fit is null && predicted is null).Points(times, net, error);
-        if (predicted is not null) figure.Line("prediction", times, predicted);
+        if (predicted is not null)
+        {
+            double[] noise = Rate([.. c.Prediction!.Variance.Select(Math.Sqrt)], width), edges = [.. axis.EdgesInSeconds().Select(e => 1e3 * e)];
+            figure.Band("simulated", edges, [.. predicted.Zip(noise, (p, n) => p - n)], [.. predicted.Zip(noise, (p, n) => p + n)]).Line("prediction", times, predicted);
+        }
         if (fit is not null) figure.Line("fit", times, fit);
         if ((fit ?? predicted) is { } model)
         {
@@ -58,7 +62,7 @@ static class ConditionFigures
     static Markup Sample(string style) => new(style switch
     {
         "point" => "<svg viewBox=\"0 0 34 12\" aria-hidden=\"true\"><line class=\"error\" x1=\"17\" x2=\"17\" y1=\"0\" y2=\"12\"/><circle class=\"point\" cx=\"17\" cy=\"6\" r=\"2.6\"/></svg>",
-        "inner" or "outer" => $"<svg viewBox=\"0 0 34 12\" aria-hidden=\"true\"><rect class=\"{style}\" width=\"34\" height=\"12\"/></svg>",
+        "inner" or "outer" or "simulated" => $"<svg viewBox=\"0 0 34 12\" aria-hidden=\"true\"><rect class=\"{style}\" width=\"34\" height=\"12\"/></svg>",
         _ => $"<svg viewBox=\"0 0 34 12\" aria-hidden=\"true\"><path class=\"{style}\" d=\"M0 6H34\"/></svg>",
     });
 

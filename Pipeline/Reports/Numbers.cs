@@ -28,6 +28,9 @@ static class Numbers
             ? Round(value, Math.Clamp(digits - 1 - (int)Math.Floor(Math.Log10(Math.Abs(value))), -9, 12))
             : value.ToString($"G{digits}", CultureInfo.InvariantCulture);
 
+    /// <summary>So many decimals.</summary>
+    public static string Decimal(double value, int decimals) => double.IsFinite(value) ? Round(value, decimals) : "–";
+
     /// <summary>Decimals at which an error shows two digits; negative where it is above 100.</summary>
     static int Decimals(double error) => error > 0 ? Math.Clamp(1 - (int)Math.Floor(Math.Log10(error)), -9, 9) : 3;
 

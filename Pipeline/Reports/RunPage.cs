@@ -54,7 +54,7 @@ public static class RunPage
     [
         ("point", "measured, background subtracted"),
         .. c.Fit.Spectra.Count > 0 ? [("fit", "fitted spectrum, folded back")] : Array.Empty<(string, string)>(),
-        .. c.Prediction is not null ? [("prediction", c.RelativeOnly ? "prediction (its number is not stated)" : "prediction, folded through the instrument")] : Array.Empty<(string, string)>(),
+        .. c.Prediction is not null ? [("prediction", c.RelativeOnly ? "prediction (its number is not stated)" : "prediction, folded through the instrument"), ("simulated", "its simulation statistics")] : Array.Empty<(string, string)>(),
     ];
 
     static Markup NumbersTable(ConditionOutcome c) => Html.Of($"""
@@ -94,12 +94,12 @@ public static class RunPage
     {
         if (fit.Spectra.Count == 0 || fit.Number.Budget.Count == 0) return Markup.None;
         IEnumerable<Markup> rows = fit.Number.Budget.OrderByDescending(b => Math.Abs(b.Shift)).Select(b => Html.Of(
-            $"<tr><td>{b.Cause}</td><td class=\"n\">{Numbers.Digits(100 * b.Shift / fit.Number.Value, 2)}</td><td class=\"n\">{MeanShift(fit, b.Cause)}</td></tr>"));
+            $"<tr><td>{b.Cause}</td><td class=\"n\">{Numbers.Decimal(100 * b.Shift / fit.Number.Value, 2)}</td><td class=\"n\">{MeanShift(fit, b.Cause)}</td></tr>"));
         return Html.Of($"<h3>Systematic budget: what one standard deviation of each cause moves</h3><div class=\"scroll\"><table><tr><th>cause</th><th class=\"n\">number (%)</th><th class=\"n\">mean velocity (m/s)</th></tr>{rows}</table></div>");
     }
 
     static string MeanShift(SpectrumOutcome fit, string cause) =>
-        fit.Mean.Budget.FirstOrDefault(b => b.Cause == cause) is { } line ? Numbers.Digits(line.Shift, 2) : "–";
+        fit.Mean.Budget.FirstOrDefault(b => b.Cause == cause) is { } line ? Numbers.Decimal(line.Shift, 3) : "–";
 
     static Markup QuestionTable(Verdict verdict)
     {
