@@ -6,7 +6,7 @@ namespace Pipeline.Configuration;
 /// <summary>layouts/NAME.toml to a layout record. To add a format: its name in <see cref="Formats"/> and its reader below.</summary>
 static class LayoutReader
 {
-    static readonly string[] Formats = ["hdf5-matrix", "csv-wide", "molecules-csv", "molecules-hdf5"];
+    static readonly string[] Formats = ["hdf5-matrix", "hdf5-groups", "hdf5-classes", "hdf5-stamps", "csv-wide", "csv-long", "csv-folder", "molecules-csv", "molecules-hdf5"];
 
     /// <returns>A <see cref="ShotFileLayout"/> or a <see cref="MoleculeFileLayout"/>.</returns>
     public static object Read(TomlTable root, string name)
@@ -15,6 +15,11 @@ static class LayoutReader
         {
             "hdf5-matrix" => Matrix(root, name),
             "csv-wide" => Wide(root, name),
+            "csv-long" => MoreLayouts.Long(root, name),
+            "csv-folder" => MoreLayouts.Folder(root, name),
+            "hdf5-groups" => MoreLayouts.Groups(root, name),
+            "hdf5-classes" => MoreLayouts.Classes(root, name),
+            "hdf5-stamps" => MoreLayouts.Stamps(root, name),
             "molecules-csv" => Molecules(root, name, null),
             _ => Molecules(root, name, root.Text("group")),
         };
@@ -38,17 +43,16 @@ static class LayoutReader
     static WideCsvLayout Wide(TomlTable root, string name)
     {
         TomlTable samples = root.Table("samples"), shots = root.Table("shots"), time = samples.Table("time");
-        (char separator, char comment) = Table(root);
         string shotTable = shots.Text("file");
         var layout = new WideCsvLayout
         {
-            Name = name, Separator = separator, Comment = comment, Meaning = MeaningOf(samples), TimeColumn = time.Text("column"),
+            Name = name, Dialect = Dialect(root), Meaning = MeaningOf(samples), TimeColumn = time.Text("column"),
             TimeFactor = UnitOf(time, Dimension.Time), ShotColumn = samples.Text("shot"), ShotTable = shotTable,
             Scale = samples.Has("scale") ? samples.Number("scale") : 1, Offset = samples.Has("offset") ? samples.Number("offset") : 0,
             LowestCode = CodeOf(samples, "lowest_code"), HighestCode = CodeOf(samples, "highest_code"), Shots = Columns(shots, root.Table("kinds")),
         };
         if (!layout.ShotColumn.Contains("{number}", StringComparison.Ordinal)) throw samples.Refuse("shot", $"\"{layout.ShotColumn}\"", "a column name with {number} in it");
-        if (layout.ShotTable.Contains("..", StringComparison.Ordinal)) throw shots.Refuse("file", $"\"{layout.ShotTable}\"", "a file in the day's folder");
+        RefuseOutside(shots, layout.ShotTable);
         time.RefuseUnknown();
         samples.RefuseUnknown();
         return layout;
@@ -56,18 +60,22 @@ static class LayoutReader
 
     static MoleculeFileLayout Molecules(TomlTable root, string name, string? group)
     {
-        (char separator, char comment) = group is null ? Table(root) : (',', '#');
         TomlTable c = root.Table("columns");
         var layout = new MoleculeFileLayout
         {
-            Name = name, Group = group, Separator = separator, Comment = comment, Time = c.Text("time"), Z = c.Text("z"), Vz = c.Text("vz"),
+            Name = name, Group = group, Dialect = group is null ? Dialect(root) : new CsvDialect(), Time = c.Text("time"), Z = c.Text("z"), Vz = c.Text("vz"),
             X = c.OptionalText("x"), Y = c.OptionalText("y"), Vx = c.OptionalText("vx"), Vy = c.OptionalText("vy"), Weight = c.Text("weight"),
         };
         c.RefuseUnknown();
         return layout;
     }
 
-    static ShotColumns Columns(TomlTable shots, TomlTable kinds)
+    internal static void RefuseOutside(TomlTable shots, string file)
+    {
+        if (file.Contains("..", StringComparison.Ordinal) || Path.IsPathRooted(file)) throw shots.Refuse("file", $"\"{file}\"", "a file beside the run");
+    }
+
+    internal static ShotColumns Columns(TomlTable shots, TomlTable kinds)
     {
         TomlTable? detuning = shots.OptionalTable("detuning");
         string? condition = shots.OptionalText("condition"), only = shots.OptionalText("only_condition");
@@ -86,26 +94,32 @@ static class LayoutReader
         return columns;
     }
 
-    static (char Separator, char Comment) Table(TomlTable root)
+    /// <summary>[table]: separator, comment, decimal, encoding, skip_lines.</summary>
+    internal static CsvDialect Dialect(TomlTable root)
     {
         TomlTable? table = root.OptionalTable("table");
+        if (table is null) return new CsvDialect();
         char One(string key, char otherwise)
         {
-            if (table is null || !table.Has(key)) return otherwise;
+            if (!table.Has(key)) return otherwise;
             string text = table.Text(key);
             return text == "tab" ? '\t' : text.Length == 1 ? text[0] : throw table.Refuse(key, $"\"{text}\"", "one character, or \"tab\"");
         }
-        (char, char) characters = (One("separator", ','), One("comment", '#'));
-        table?.RefuseUnknown();
-        return characters;
+        var dialect = new CsvDialect(One("separator", ','), One("comment", '#'),
+            table.Has("decimal") ? table.Choice("decimal", ("point", '.'), ("comma", ',')) : '.',
+            table.Has("encoding") && table.Choice("encoding", ("utf-8", false), ("latin-1", true)),
+            table.Has("skip_lines") ? table.Whole("skip_lines", 0, 10_000) : 0);
+        if (dialect.Decimal == dialect.Separator) throw table.Refuse("decimal", "the separator of fields", "another character");
+        table.RefuseUnknown();
+        return dialect;
     }
 
-    static SampleMeaning MeaningOf(TomlTable samples) =>
+    internal static SampleMeaning MeaningOf(TomlTable samples) =>
         samples.Choice("refers_to", ("bin start", SampleMeaning.BinStart), ("instant", SampleMeaning.Instant));
 
-    static int? CodeOf(TomlTable samples, string key) => samples.Has(key) ? samples.Whole(key, int.MinValue, int.MaxValue) : null;
+    internal static int? CodeOf(TomlTable samples, string key) => samples.Has(key) ? samples.Whole(key, int.MinValue, int.MaxValue) : null;
 
-    static double UnitOf(TomlTable t, Dimension dimension)
+    internal static double UnitOf(TomlTable t, Dimension dimension)
     {
         string unit = t.Text("unit");
         return UnitTable.TryFind(dimension, unit, out double factor) ? factor : throw t.Refuse("unit", $"\"{unit}\"", $"one of {UnitTable.Accepted(dimension)}");

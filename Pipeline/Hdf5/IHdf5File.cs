@@ -27,10 +27,13 @@ public interface IHdf5File : IDisposable
     /// <exception cref="DataFaultException">No such dataset, or one that cannot be read safely.</exception>
     DatasetShape Shape(string path);
 
-    /// <summary>[rows * columns] of a two-dimensional integer dataset.</summary>
+    /// <summary>Names of the groups in a group, in ordinal order.</summary>
+    IReadOnlyList<string> Groups(string path);
+
+    /// <summary>[rows * what one row holds] of an integer dataset of any rank; a row is one step along the first dimension.</summary>
     int[] ReadIntegers(string path, long firstRow, int rows);
 
-    /// <summary>[rows * columns] of a two-dimensional dataset of floating-point numbers.</summary>
+    /// <summary>The same of a dataset of floating-point numbers.</summary>
     double[] ReadReals(string path, long firstRow, int rows);
 
     /// <summary>[n] of a one-dimensional numeric dataset.</summary>
@@ -42,4 +45,7 @@ public interface IHdf5File : IDisposable
     /// <summary>A numeric attribute of a dataset or group.</summary>
     /// <exception cref="DataFaultException">No such attribute, or not a number.</exception>
     double ReadNumberAttribute(string path, string attribute);
+
+    /// <summary>An attribute as text; numbers are given as invariant text.</summary>
+    string ReadTextAttribute(string path, string attribute);
 }

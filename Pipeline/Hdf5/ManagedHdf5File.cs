@@ -45,8 +45,7 @@ sealed class ManagedHdf5File : IHdf5File
     public int[] ReadIntegers(string path, long firstRow, int rows)
     {
         IH5Dataset dataset = Dataset(path);
-        long columns = Columns(path, dataset);
-        HyperslabSelection part = Rows(firstRow, rows, columns);
+        HyperslabSelection part = Rows(dataset, firstRow, rows);
         bool signed = dataset.Type.FixedPoint.IsSigned;
         return Guarded(path, () => (dataset.Type.Size, signed) switch
         {
@@ -64,7 +63,7 @@ sealed class ManagedHdf5File : IHdf5File
     public double[] ReadReals(string path, long firstRow, int rows)
     {
         IH5Dataset dataset = Dataset(path);
-        HyperslabSelection part = Rows(firstRow, rows, Columns(path, dataset));
+        HyperslabSelection part = Rows(dataset, firstRow, rows);
         return Guarded(path, () => dataset.Type.Size switch
         {
             4 => Widen(dataset.Read<float[]>(part), v => (double)v),
@@ -105,6 +104,17 @@ sealed class ManagedHdf5File : IHdf5File
         };
     });
 
+    public string ReadTextAttribute(string path, string attribute) => Guarded($"{path}, attribute {attribute}", () =>
+    {
+        IH5Object holder = Find(path) ?? throw Missing(path);
+        if (!holder.AttributeExists(attribute)) throw Refuse($"{path}, attribute {attribute}", "no such attribute", "a label", "name the right attribute in the layout");
+        return holder.Attribute(attribute).Type.Class is H5DataTypeClass.String or H5DataTypeClass.VariableLength
+            ? holder.Attribute(attribute).Read<string>().TrimEnd('\0', ' ') : ReadNumberAttribute(path, attribute).ToString(CultureInfo.InvariantCulture);
+    });
+
+    public IReadOnlyList<string> Groups(string path) => Guarded(path, () =>
+        (Find(path) as IH5Group ?? throw Missing(path)).Children().OfType<IH5Group>().Select(g => g.Name).Order(StringComparer.Ordinal).ToArray());
+
     double[] Numbers(string path, IH5Dataset dataset)
     {
         CheckRank(path, dataset, 1);
@@ -143,19 +153,18 @@ sealed class ManagedHdf5File : IHdf5File
         _ => ElementKind.Other,
     };
 
-    long Columns(string path, IH5Dataset dataset)
-    {
-        CheckRank(path, dataset, 2);
-        return (long)dataset.Space.Dimensions[1];
-    }
-
     void CheckRank(string path, IH5Dataset dataset, int rank)
     {
         if (dataset.Space.Rank != rank)
             throw Refuse(path, $"{dataset.Space.Rank} dimensions", $"{rank}", "name the right dataset in the layout");
     }
 
-    static HyperslabSelection Rows(long first, int rows, long columns) => new(2, [(ulong)first, 0], [(ulong)rows, (ulong)columns]);
+    static HyperslabSelection Rows(IH5Dataset dataset, long first, int rows)
+    {
+        ulong[] starts = new ulong[dataset.Space.Rank], counts = [.. dataset.Space.Dimensions];
+        (starts[0], counts[0]) = ((ulong)first, (ulong)rows);
+        return new HyperslabSelection(dataset.Space.Rank, starts, counts);
+    }
 
     static TTo[] Widen<TFrom, TTo>(TFrom[] values, Converter<TFrom, TTo> convert) => Array.ConvertAll(values, convert);
 

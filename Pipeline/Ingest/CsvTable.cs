@@ -1,5 +1,6 @@
 using System.Buffers.Text;
 using System.Globalization;
+using System.Text;
 using CsvHelper;
 
 namespace Pipeline.Ingest;
@@ -8,19 +9,20 @@ namespace Pipeline.Ingest;
 sealed class CsvTable : IDisposable
 {
     readonly string _name;
+    readonly CsvDialect _dialect;
     readonly FileStream _stream;
     readonly CsvReader _reader;
 
     /// <param name="path">The file.</param>
-    /// <param name="separator">Between fields.</param>
-    /// <param name="comment">Lines that begin with it are left out.</param>
-    public CsvTable(string path, char separator, char comment)
+    /// <param name="dialect">How it is written.</param>
+    public CsvTable(string path, CsvDialect dialect)
     {
-        _name = Path.GetFileName(path);
+        (_name, _dialect) = (Path.GetFileName(path), dialect);
         _stream = Open(path);
+        SkipLines();
         _reader = CsvReader.Create(_stream, new CsvReaderOptions
         {
-            Separator = separator, CommentPrefix = comment, TrackLineNumbers = true, HasHeader = false, DetectSeparatorHint = false,
+            Separator = dialect.Separator, CommentPrefix = dialect.Comment, Encoding = dialect.Latin1 ? Encoding.Latin1 : Encoding.UTF8, TrackLineNumbers = true, HasHeader = false, DetectSeparatorHint = false,
             AllowLineBreaksInQuotes = false, TrimWhitespace = true, FormatProvider = CultureInfo.InvariantCulture, BufferSize = 1 << 18,
         });
         if (!NextRecord()) throw new DataFaultException(_name, "no header line", "a line of column names", "export the file again");
@@ -30,7 +32,7 @@ sealed class CsvTable : IDisposable
     public IReadOnlyList<string> Headers { get; }
 
     /// <summary>"run.csv, line 12".</summary>
-    public string Where => $"{_name}, line {_reader.LineNumber.ToString(CultureInfo.InvariantCulture)}";
+    public string Where => $"{_name}, line {(_dialect.SkipLines + _reader.LineNumber).ToString(CultureInfo.InvariantCulture)}";
 
     public void Dispose()
     {
@@ -68,9 +70,9 @@ sealed class CsvTable : IDisposable
     public double Number(int column)
     {
         ReadOnlySpan<byte> field = _reader.GetSpan(column);
-        if (Utf8Parser.TryParse(field, out double value, out int used) && used == field.Length && double.IsFinite(value)) return value;
+        if (TryParse(field, out double value) && double.IsFinite(value)) return value;
         throw new DataFaultException($"{Where}, column \"{Headers[column]}\"", field.Length == 0 ? "an empty field" : $"\"{_reader.GetString(column)}\"",
-            "a finite number with a decimal point", "correct the field or export the file again");
+            $"a finite number with \"{_dialect.Decimal}\" before its decimals", "correct the field or export the file again");
     }
 
     /// <summary>A whole number that fits in 32 bits, if the field is one.</summary>
@@ -78,6 +80,26 @@ sealed class CsvTable : IDisposable
     {
         ReadOnlySpan<byte> field = _reader.GetSpan(column);
         return Utf8Parser.TryParse(field, out value, out int used) && used == field.Length && used > 0;
+    }
+
+    bool TryParse(ReadOnlySpan<byte> field, out double value)
+    {
+        value = 0;
+        if (_dialect.Decimal != ',') return Utf8Parser.TryParse(field, out value, out int used) && used == field.Length;
+        if (field.Length > 64 || field.Contains((byte)'.')) return false;
+        Span<byte> point = stackalloc byte[field.Length];
+        field.Replace(point, (byte)',', (byte)'.');
+        return Utf8Parser.TryParse(point, out value, out int all) && all == field.Length;
+    }
+
+    void SkipLines()
+    {
+        for (int lines = 0; lines < _dialect.SkipLines;)
+        {
+            int next = _stream.ReadByte();
+            if (next < 0) throw new DataFaultException(_name, $"{lines} lines", $"{_dialect.SkipLines} lines before the header", "correct skip_lines in the layout");
+            if (next == '\n') lines++;
+        }
     }
 
     bool NextRecord()
@@ -94,7 +116,7 @@ sealed class CsvTable : IDisposable
     {
         try
         {
-            var stream = new FileStream(path, new FileStreamOptions { Access = FileAccess.Read, Share = FileShare.Read, BufferSize = 0, Options = FileOptions.SequentialScan });
+            var stream = new FileStream(path, new FileStreamOptions { Access = FileAccess.Read, Share = FileShare.Read, BufferSize = 1 << 12, Options = FileOptions.SequentialScan });
             if (stream.Length > 0) return stream;
             stream.Dispose();
         }

@@ -26,7 +26,7 @@ sealed class Hdf5MatrixSource : IShotSource
         {
             _data = CheckedShape();
             Shape = ShapeOf(kind);
-            _shots = ReadShots();
+            _shots = ShotTable.ReadHdf5(_file, layout.Shots).ToShots(_name, layout.Shots, Shape.Shots);
         }
         catch
         {
@@ -82,16 +82,6 @@ sealed class Hdf5MatrixSource : IShotSource
 
     double Value(StatedOrStored of) =>
         of.Attribute is { } attribute ? of.Factor * _file.ReadNumberAttribute(_layout.Samples, attribute) : of.Value ?? 0;
-
-    ShotInfo[] ReadShots()
-    {
-        ShotColumns columns = _layout.Shots;
-        double[]? Optional(string? path) => path is null ? null : _file.ReadNumbers(path);
-        var table = new ShotTable(Optional(columns.Number), _file.ReadLabels(columns.Kind),
-            columns.Condition is { } condition ? _file.ReadLabels(condition) : null,
-            Optional(columns.ProbeMonitor), Optional(columns.AblationMonitor), Optional(columns.Detuning));
-        return table.ToShots(_name, columns, Shape.Shots);
-    }
 
     double[] Finite(double[] values, int firstShot)
     {

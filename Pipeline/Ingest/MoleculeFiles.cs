@@ -32,7 +32,7 @@ public static class MoleculeFiles
 
     static double[][] FromCsv(string path, MoleculeFileLayout layout, string?[] names)
     {
-        using var table = new CsvTable(path, layout.Separator, layout.Comment);
+        using var table = new CsvTable(path, layout.Dialect);
         int[] places = [.. names.Select(n => n is null ? -1 : table.Column(n))];
         var lists = names.Select(_ => new List<double>()).ToArray();
         while (table.Next())

@@ -57,12 +57,85 @@ public sealed record Hdf5MatrixLayout : ShotFileLayout
     public required StatedOrStored Offset { get; init; }
 }
 
+/// <summary>How a CSV file is written.</summary>
+/// <param name="Separator">Between fields.</param>
+/// <param name="Comment">Lines that begin with it are left out.</param>
+/// <param name="Decimal">'.' or ','.</param>
+/// <param name="Latin1">ISO 8859-1 rather than UTF-8.</param>
+/// <param name="SkipLines">Lines before the header.</param>
+public sealed record CsvDialect(char Separator = ',', char Comment = '#', char Decimal = '.', bool Latin1 = false, int SkipLines = 0);
+
+/// <summary>Sampling times that the file does not hold.</summary>
+/// <param name="Start">Time of the first sample after the trigger, s.</param>
+/// <param name="Step">Sampling interval, s.</param>
+/// <param name="Samples">Samples a shot.</param>
+public sealed record StatedAxis(double Start, double Step, int Samples);
+
+/// <summary>CSV with one row a shot and sample; rows of one shot stand together, empty counting bins may be left out.</summary>
+public sealed record LongCsvLayout : ShotFileLayout
+{
+    public CsvDialect Dialect { get; init; } = new();
+    public required StatedAxis Axis { get; init; }
+    public required string ShotColumn { get; init; }
+    public required string TimeColumn { get; init; }
+    public required double TimeFactor { get; init; }
+    public required string ValueColumn { get; init; }
+    /// <summary>Shot table beside the file; "{run}" stands for the file's name without extension.</summary>
+    public required string ShotTable { get; init; }
+}
+
+/// <summary>A folder with one CSV a shot, and a table of shots that names each file. The folder is the run.</summary>
+public sealed record CsvFolderLayout : ShotFileLayout
+{
+    /// <summary>Of the traces.</summary>
+    public CsvDialect Dialect { get; init; } = new();
+    public required string TimeColumn { get; init; }
+    public required double TimeFactor { get; init; }
+    public required string ValueColumn { get; init; }
+    /// <summary>Table of shots in the folder.</summary>
+    public required string ShotTable { get; init; }
+    /// <summary>Its column with file names.</summary>
+    public required string FileColumn { get; init; }
+}
+
+/// <summary>HDF5 with photon time stamps and the position of each one's shot; binned on reading.</summary>
+public sealed record Hdf5StampsLayout : ShotFileLayout
+{
+    public required StatedAxis Axis { get; init; }
+    /// <summary>Dataset of times.</summary>
+    public required string Times { get; init; }
+    /// <summary>Seconds in one unit of the times.</summary>
+    public required double TimeFactor { get; init; }
+    /// <summary>Dataset with the position of the shot in the housekeeping, rising.</summary>
+    public required string ShotIndex { get; init; }
+}
+
+/// <summary>HDF5 with one group a shot: samples as a dataset in it, housekeeping as its attributes.</summary>
+public sealed record Hdf5GroupsLayout : ShotFileLayout
+{
+    public required StatedAxis Axis { get; init; }
+    /// <summary>Name of a group; "*" stands for anything.</summary>
+    public required string Groups { get; init; }
+    /// <summary>Dataset in it.</summary>
+    public required string Samples { get; init; }
+}
+
+/// <summary>HDF5 with one group a kind and condition: samples [point, repeat, sample], housekeeping [point, repeat]; shots that were not
+/// taken are NaN.</summary>
+public sealed record Hdf5ClassesLayout : ShotFileLayout
+{
+    /// <summary>Name of a group with "{kind}" and "{condition}" in it.</summary>
+    public required string Groups { get; init; }
+    public required string Samples { get; init; }
+    /// <summary>Dataset of sampling times, at the top of the file.</summary>
+    public required string Times { get; init; }
+    public required double TimeFactor { get; init; }
+}
+
 /// <summary>CSV with one row a time and one column a shot, and a table of shots beside it.</summary>
 public sealed record WideCsvLayout : ShotFileLayout
 {
-    public char Separator { get; init; } = ',';
-    /// <summary>Lines that begin with this are comments.</summary>
-    public char Comment { get; init; } = '#';
+    public CsvDialect Dialect { get; init; } = new();
     public required string TimeColumn { get; init; }
     /// <summary>Seconds in one unit of the time column.</summary>
     public required double TimeFactor { get; init; }
@@ -80,8 +153,7 @@ public sealed record MoleculeFileLayout
     public required string Name { get; init; }
     /// <summary>HDF5 group; null for CSV.</summary>
     public string? Group { get; init; }
-    public char Separator { get; init; } = ',';
-    public char Comment { get; init; } = '#';
+    public CsvDialect Dialect { get; init; } = new();
     public required string Time { get; init; }
     public required string Z { get; init; }
     public required string Vz { get; init; }

@@ -13,6 +13,11 @@ public static class ShotFiles
     {
         Hdf5MatrixLayout matrix => new Hdf5MatrixSource(path, matrix, kind),
         WideCsvLayout wide => new WideCsvSource(path, wide, kind),
+        LongCsvLayout list => new LongCsvSource(path, list, kind),
+        CsvFolderLayout folder => new CsvFolderSource(path, folder, kind),
+        Hdf5StampsLayout stamps => new Hdf5StampsSource(path, stamps, kind),
+        Hdf5GroupsLayout groups => new Hdf5GroupsSource(path, groups, kind),
+        Hdf5ClassesLayout classes => new Hdf5ClassesSource(path, classes, kind),
         _ => throw new ArgumentOutOfRangeException(nameof(layout), layout.GetType().Name, "has no reader"),
     };
 }

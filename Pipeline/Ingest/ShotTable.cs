@@ -1,4 +1,5 @@
 using System.Globalization;
+using Pipeline.Hdf5;
 using Pipeline.Reduction;
 
 namespace Pipeline.Ingest;
@@ -30,6 +31,39 @@ sealed record ShotTable(double[]? Number, string[] Kind, string[]? Condition, do
                 Probe?[k] ?? double.NaN, Ablation?[k] ?? double.NaN, (Detuning?[k] ?? double.NaN) * columns.DetuningFactor);
         RefuseDuplicates(name, infos);
         return infos;
+    }
+
+    /// <summary>Housekeeping that an HDF5 file keeps as datasets with one value a shot.</summary>
+    public static ShotTable ReadHdf5(IHdf5File file, ShotColumns columns)
+    {
+        double[]? Optional(string? path) => path is null ? null : file.ReadNumbers(path);
+        return new ShotTable(Optional(columns.Number), file.ReadLabels(columns.Kind), columns.Condition is { } condition ? file.ReadLabels(condition) : null,
+            Optional(columns.ProbeMonitor), Optional(columns.AblationMonitor), Optional(columns.Detuning));
+    }
+
+    /// <summary>A shot table in a CSV file, one row a shot.</summary>
+    /// <param name="path">The file.</param>
+    /// <param name="dialect">How it is written.</param>
+    /// <param name="columns">Names of its columns.</param>
+    /// <param name="eachRow">Told of every row, for columns beyond these.</param>
+    public static ShotInfo[] ReadCsv(string path, CsvDialect dialect, ShotColumns columns, Action<CsvTable>? eachRow = null)
+    {
+        using var table = new CsvTable(path, dialect);
+        string?[] numeric = [columns.Number, columns.ProbeMonitor, columns.AblationMonitor, columns.Detuning];
+        int[] places = [.. numeric.Select(n => n is null ? -1 : table.Column(n))];
+        int kind = table.Column(columns.Kind), condition = columns.Condition is null ? -1 : table.Column(columns.Condition);
+        var (kinds, conditions) = (new List<string>(), new List<string>());
+        var numbers = numeric.Select(_ => new List<double>()).ToArray();
+        while (table.Next())
+        {
+            kinds.Add(table.Text(kind));
+            if (condition >= 0) conditions.Add(table.Text(condition));
+            for (int k = 0; k < places.Length; k++) if (places[k] >= 0) numbers[k].Add(table.Number(places[k]));
+            eachRow?.Invoke(table);
+        }
+        if (kinds.Count == 0) throw new DataFaultException(Path.GetFileName(path), "no shots", "one row a shot", "export the shot table again");
+        double[]? Given(int k) => places[k] < 0 ? null : [.. numbers[k]];
+        return new ShotTable(Given(0), [.. kinds], condition < 0 ? null : [.. conditions], Given(1), Given(2), Given(3)).ToShots(Path.GetFileName(path), columns);
     }
 
     ShotKind KindOf(string name, ShotColumns columns, int shot)

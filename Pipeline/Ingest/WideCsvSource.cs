@@ -23,7 +23,7 @@ sealed class WideCsvSource : IShotSource
         string tableName = layout.ShotTable.Replace("{run}", Path.GetFileNameWithoutExtension(path), StringComparison.Ordinal);
         string tablePath = Path.Combine(Path.GetDirectoryName(path) ?? "", tableName);
         InputFiles = [path, tablePath];
-        _shots = ReadShots(tablePath);
+        _shots = ShotTable.ReadCsv(tablePath, layout.Dialect, layout.Shots);
         using (CsvTable table = Open()) _columns = ColumnsOf(table);
         TimeScan scan = Scan();
         _whole = scan.Whole;
@@ -72,32 +72,9 @@ sealed class WideCsvSource : IShotSource
         return values;
     }
 
-    CsvTable Open() => new(_path, _layout.Separator, _layout.Comment);
+    CsvTable Open() => new(_path, _layout.Dialect);
 
     DataFaultException Changed() => new(_name, "a file that changes while it is read", "a finished file", "wait until it is written");
-
-    ShotInfo[] ReadShots(string path)
-    {
-        using var table = new CsvTable(path, _layout.Separator, _layout.Comment);
-        ShotColumns columns = _layout.Shots;
-        int Column(string? name) => name is null ? -1 : table.Column(name);
-        int number = Column(columns.Number), kind = table.Column(columns.Kind), condition = Column(columns.Condition);
-        int probe = Column(columns.ProbeMonitor), ablation = Column(columns.AblationMonitor), detuning = Column(columns.Detuning);
-        var (numbers, kinds, conditions) = (new List<double>(), new List<string>(), new List<string>());
-        var (probes, ablations, detunings) = (new List<double>(), new List<double>(), new List<double>());
-        while (table.Next())
-        {
-            if (number >= 0) numbers.Add(table.Number(number));
-            kinds.Add(table.Text(kind));
-            if (condition >= 0) conditions.Add(table.Text(condition));
-            if (probe >= 0) probes.Add(table.Number(probe));
-            if (ablation >= 0) ablations.Add(table.Number(ablation));
-            if (detuning >= 0) detunings.Add(table.Number(detuning));
-        }
-        if (kinds.Count == 0) throw new DataFaultException(Path.GetFileName(path), "no shots", "one row a shot", "export the shot table again");
-        return new ShotTable(number < 0 ? null : [.. numbers], [.. kinds], condition < 0 ? null : [.. conditions], probe < 0 ? null : [.. probes],
-            ablation < 0 ? null : [.. ablations], detuning < 0 ? null : [.. detunings]).ToShots(Path.GetFileName(path), columns);
-    }
 
     /// <summary>[shots] column of each shot; a column that no shot names is a fault, so that nothing is left out unsaid.</summary>
     int[] ColumnsOf(CsvTable table)
@@ -135,19 +112,7 @@ sealed class WideCsvSource : IShotSource
             times.Add(t);
             for (int k = 0; whole && k < _columns.Length; k++) whole = table.TryWhole(_columns[k], out _);
         }
-        if (times.Count < 2) throw new DataFaultException(_name, $"{times.Count} rows", "two or more sampling times", "export the file again");
-        double step = Rounded((times[^1] - times[0]) / (times.Count - 1), times);
+        double step = EvenTimes.Step($"{_name}, column \"{_layout.TimeColumn}\"", times);
         return new TimeScan(times.Count, UnitTable.ToSi(times[0], _layout.TimeFactor), UnitTable.ToSi(step, _layout.TimeFactor), whole);
-    }
-
-    /// <summary>The sampling interval as printed: nine digits, if all times agree with it to 1 % of a step.</summary>
-    double Rounded(double step, List<double> times)
-    {
-        double printed = double.Parse(step.ToString("G9", CultureInfo.InvariantCulture), CultureInfo.InvariantCulture);
-        for (int i = 0; i < times.Count; i++)
-            if (Math.Abs(times[i] - times[0] - i * printed) > 0.01 * printed)
-                throw new DataFaultException($"{_name}, column \"{_layout.TimeColumn}\", sample {i}", $"time {times[i].ToString(CultureInfo.InvariantCulture)}",
-                    $"{(times[0] + i * printed).ToString("G9", CultureInfo.InvariantCulture)}: even steps", "export the file with more digits, or without gaps");
-        return printed;
     }
 }

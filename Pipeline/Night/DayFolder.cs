@@ -23,20 +23,20 @@ public sealed class DayFolder
     public string Name => System.IO.Path.GetFileName(System.IO.Path.TrimEndingDirectorySeparator(System.IO.Path.GetFullPath(Path)));
     /// <summary>In order of name.</summary>
     public IReadOnlyList<RunFile> Runs { get; }
-    /// <summary>Files that no rule calls a run, and that no run or prediction needs.</summary>
+    /// <summary>Files and folders that no rule calls a run, and that no run or prediction needs.</summary>
     public IReadOnlyList<string> NotRuns { get; }
 
     /// <exception cref="DataFaultException">No such folder, or two runs of one name.</exception>
     public static DayFolder Open(string path, LabConfiguration lab)
     {
         if (!Directory.Exists(path)) throw new DataFaultException(path, "no such folder", "a day's folder with shot files", "check the name");
-        string[] files = [.. Directory.GetFiles(path).Select(f => System.IO.Path.GetFileName(f)).Where(f => f[0] != '.').Order(StringComparer.Ordinal)];
+        string[] files = [.. Directory.GetFileSystemEntries(path).Select(f => System.IO.Path.GetFileName(f)).Where(f => f[0] != '.').Order(StringComparer.Ordinal)];
         var predictions = lab.Predictions.Select(p => p.File).ToHashSet(StringComparer.Ordinal);
         RunFile[] runs = [.. files.Where(f => !predictions.Contains(f)).Select(f => RunOf(path, f, lab)).OfType<RunFile>()];
         foreach (var same in runs.GroupBy(r => r.Name, StringComparer.Ordinal).Where(g => g.Count() > 1))
             throw new DataFaultException(path, $"two runs named {same.Key}: {string.Join(", ", same.Select(r => System.IO.Path.GetFileName(r.Path)))}", "one file a name", "rename one of them");
         var used = runs.SelectMany(r => Companions(r)).ToHashSet(StringComparer.Ordinal);
-        return new DayFolder(path, runs, [.. files.Where(f => !used.Contains(f) && !predictions.Contains(f))]);
+        return new DayFolder(path, runs, [.. files.Where(f => !used.Contains(f) && !predictions.Contains(f) && !predictions.Any(p => p.StartsWith(f + "/", StringComparison.Ordinal)))]);
     }
 
     /// <summary>The run of this name, with or without extension.</summary>
@@ -46,15 +46,19 @@ public sealed class DayFolder
 
     static RunFile? RunOf(string folder, string file, LabConfiguration lab)
     {
-        RunRule? rule = lab.Runs.FirstOrDefault(r => FileSystemName.MatchesSimpleExpression(r.Match, file, ignoreCase: false));
-        return rule is null ? null
-            : new RunFile(System.IO.Path.GetFileNameWithoutExtension(file), System.IO.Path.Combine(folder, file), rule, lab.ShotLayouts[rule.Layout]);
+        bool isFolder = Directory.Exists(System.IO.Path.Combine(folder, file));
+        RunRule? rule = lab.Runs.FirstOrDefault(r => FileSystemName.MatchesSimpleExpression(r.Match, file, ignoreCase: false) && lab.ShotLayouts[r.Layout] is CsvFolderLayout == isFolder);
+        return rule is null ? null : new RunFile(NameOf(folder, file), System.IO.Path.Combine(folder, file), rule, lab.ShotLayouts[rule.Layout]);
     }
+
+    static string NameOf(string folder, string file) =>
+        Directory.Exists(System.IO.Path.Combine(folder, file)) ? file : System.IO.Path.GetFileNameWithoutExtension(file);
 
     static IEnumerable<string> Companions(RunFile run)
     {
         yield return System.IO.Path.GetFileName(run.Path);
-        if (run.Layout is WideCsvLayout wide) yield return wide.ShotTable.Replace("{run}", run.Name, StringComparison.Ordinal);
+        string? table = run.Layout switch { WideCsvLayout wide => wide.ShotTable, LongCsvLayout list => list.ShotTable, _ => null };
+        if (table is not null) yield return table.Replace("{run}", run.Name, StringComparison.Ordinal);
     }
 }
 
