@@ -59,6 +59,15 @@ public class ReducerTests
         Assert.Equal(cut, run.Cuts.Sum(c => c.Numbers.Count));
     }
 
+    [Fact]
+    public void Reduce_MonitorFarFromTheOthers_IsCut()
+    {
+        ShotInfo[] infos = [.. Enumerable.Range(0, 20).Select(k => Info(k) with { ProbeMonitor = k == 7 ? 1.5 : 1 + 0.01 * (k % 5) })];
+        BinnedRun run = Reducer.Reduce(Shape(20), infos, [new ShotBlock(0, infos, Noise(6, 20))], Counting, new ReductionSettings { MonitorOutlierBeyond = 8 });
+        Assert.Equal([7L], run.Cuts.Single(c => c.Reason == "monitor outlier").Numbers);
+        Assert.Empty(Reducer.Reduce(Shape(20), infos, [new ShotBlock(0, infos, Noise(6, 20))], Counting, new ReductionSettings()).Cuts);
+    }
+
     [Theory]
     [InlineData(40, true)]
     [InlineData(1, false)]

@@ -11,6 +11,15 @@ public enum DetectorKind
     Analog,
 }
 
+/// <summary>What a count does to the next one within the dead time.</summary>
+public enum DeadTimeKind
+{
+    /// <summary>It is lost and changes nothing.</summary>
+    NonParalysable,
+    /// <summary>It is lost and begins the dead time anew.</summary>
+    Paralysable,
+}
+
 /// <summary>Photons to recorded signal.</summary>
 public sealed record Detector
 {
@@ -18,7 +27,8 @@ public sealed record Detector
     /// <summary>Detected counts (or photo-electrons) for each photon that a molecule scatters: solid angle, optics, filter band and
     /// quantum efficiency together; in (0, 1].</summary>
     public required Measured Efficiency { get; init => field = Guard.Share(value); }
-    /// <summary>Non-paralysable dead time, s.</summary>
+    public DeadTimeKind DeadTimeKind { get; init; }
+    /// <summary>s; 0 where none is known.</summary>
     public Measured DeadTime { get; init => field = Guard.NotNegative(value); }
     /// <summary>Volt-seconds for each photo-electron; analog only, then required.</summary>
     public Measured? VoltSecondPerElectron { get; init => field = value is { } g ? Guard.Positive(g) : null; }

@@ -34,7 +34,7 @@ sealed record ShotMeans
         {
             Shots = group.Shots,
             Total = total,
-            Live = counting ? DeadTime.Live(group, run.Axis, detector.DeadTime.Value) : [.. total.Select(_ => 1.0)],
+            Live = counting ? DeadTime.Live(group, run.Axis, detector.DeadTime.Value, detector.DeadTimeKind) : [.. total.Select(_ => 1.0)],
             Variance = counting ? PoissonVariance(total, run.Axis) : BlockScatter(group, unit),
             ProbeMonitor = group.BlockProbeMonitor.Sum() / group.Shots,
             AblationMonitor = group.BlockAblationMonitor.Sum() / group.Shots,

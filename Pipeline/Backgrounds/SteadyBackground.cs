@@ -55,7 +55,7 @@ sealed class SteadyBackground : IBackgroundModel
         {
             Axis = axis, Condition = data.Condition, DetectorKind = DetectorKind.Counting, Shots = signal.Shots, Total = signal.Total,
             Live = signal.Live, Background = background, BackgroundVariance = new double[axis.Bins], Causes = causes,
-            Remarks = [.. data.Remarks, .. FlatnessRemark(data)],
+            Remarks = [.. data.Remarks, .. FlatnessRemark(data), .. DeadTime.Remarks(data.Condition, axis, signal.Live)],
         };
     }
 

@@ -46,7 +46,8 @@ sealed class TemplateBackground : IBackgroundModel
             Axis = run.Axis, Condition = condition, DetectorKind = run.DetectorKind, Shots = signal.Shots, Total = signal.Total,
             Live = signal.Live, Background = background, BackgroundVariance = variance,
             TotalVariance = run.DetectorKind == DetectorKind.Analog ? signal.Variance : null,
-            Causes = [new("scatter scale", byProbe), new("flash scale", byAblation)], Remarks = remarks,
+            Causes = [new("scatter scale", byProbe), new("flash scale", byAblation)],
+            Remarks = [.. remarks, .. DeadTime.Remarks(condition, run.Axis, signal.Live)],
         };
     }
 

@@ -89,13 +89,15 @@ static class ApparatusReader
         DetectorKind kind = t.Choice("kind", ("counting", DetectorKind.Counting), ("analog", DetectorKind.Analog));
         Measured efficiency = t.Quantity("efficiency", Dimension.Fraction);
         Measured deadTime = kind == DetectorKind.Counting ? t.OptionalQuantity("dead_time", Dimension.Time) ?? default : default;
+        DeadTimeKind paralysable = kind == DetectorKind.Counting && t.Has("dead_time_kind")
+            ? t.Choice("dead_time_kind", ("non-paralysable", DeadTimeKind.NonParalysable), ("paralysable", DeadTimeKind.Paralysable)) : DeadTimeKind.NonParalysable;
         Measured? gain = kind == DetectorKind.Analog ? t.Quantity("volt_second_per_electron", Dimension.VoltSecond) : null;
         var (probeZero, ablationZero) = (t.OptionalQuantity("probe_monitor_zero", Dimension.Voltage) ?? default, t.OptionalQuantity("ablation_monitor_zero", Dimension.Voltage) ?? default);
         var (probeNoise, ablationNoise) = (t.OptionalQuantity("probe_monitor_noise", Dimension.Fraction) ?? default, t.OptionalQuantity("ablation_monitor_noise", Dimension.Fraction) ?? default);
         t.RefuseUnknown();
         return t.Build(() => new Detector
         {
-            Kind = kind, Efficiency = efficiency, DeadTime = deadTime, VoltSecondPerElectron = gain, ProbeMonitorZero = probeZero,
+            Kind = kind, Efficiency = efficiency, DeadTime = deadTime, DeadTimeKind = paralysable, VoltSecondPerElectron = gain, ProbeMonitorZero = probeZero,
             AblationMonitorZero = ablationZero, ProbeMonitorNoise = probeNoise.Value, AblationMonitorNoise = ablationNoise.Value,
         });
     }

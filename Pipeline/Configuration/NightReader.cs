@@ -57,11 +57,19 @@ static class NightReader
         {
             RelativeBinWidth = relative, ShortestBinSeconds = shortest, UnlockedBeyondHz = unlocked,
             ShotsPerBlock = a.Has("shots_per_block") ? a.Whole("shots_per_block", 1, 100_000) : plain.ShotsPerBlock,
+            MonitorOutlierBeyond = Deviations(checks),
             CutFlatRecords = checks is null || !checks.Has("cut_flat_records") ? plain.CutFlatRecords : checks.Flag("cut_flat_records"),
             CutSaturated = checks is null || !checks.Has("cut_saturated") ? plain.CutSaturated : checks.Flag("cut_saturated"),
         };
         checks?.RefuseUnknown();
         return settings;
+    }
+
+    static double? Deviations(TomlTable? checks)
+    {
+        if (checks is null || !checks.Has("monitor_outlier_beyond")) return null;
+        double beyond = checks.Number("monitor_outlier_beyond");
+        return beyond >= 3 ? beyond : throw checks.Refuse("monitor_outlier_beyond", $"{beyond:G4}", "3 or more standard deviations: less would cut good shots");
     }
 
     static FitSettings ReadFit(TomlTable a, NightChoices choices)

@@ -19,11 +19,12 @@ public interface IShotCheck
 /// <summary>The checks that settings ask for, in the order in which a shot is blamed.</summary>
 public static class ShotChecks
 {
-    public static IReadOnlyList<IShotCheck> For(ReductionSettings settings, RecordShape shape)
+    public static IReadOnlyList<IShotCheck> For(ReductionSettings settings, RecordShape shape, IReadOnlyList<ShotInfo> allShots)
     {
         var checks = new List<IShotCheck>();
         if (settings.CutFlatRecords) checks.Add(new MissingTrigger());
         if (settings.UnlockedBeyondHz is { } limit) checks.Add(new UnlockedProbe(limit));
+        if (settings.MonitorOutlierBeyond is { } deviations) checks.Add(new MonitorOutlier(deviations, allShots));
         if (settings.CutSaturated && (shape.LowestCode is not null || shape.HighestCode is not null))
             checks.Add(new Saturated(shape.LowestCode ?? int.MinValue, shape.HighestCode ?? int.MaxValue));
         return checks;
@@ -42,6 +43,37 @@ sealed class UnlockedProbe(double limitHz) : IShotCheck
 {
     public string Reason => "probe unlocked";
     public bool Cuts(in ShotView shot) => Math.Abs(shot.Info.DetuningReadback - shot.MedianDetuning) > limitHz;
+}
+
+/// <summary>A probe monitor far from that of the other shots of its kind.</summary>
+/// <remarks>Median and median absolute deviation times 1.4826, which is the standard deviation of normal noise (Rousseeuw and Croux, J. Am.
+/// Stat. Assoc. 88, 1273, 1993). The ablation monitor is left alone: it follows the yield, and cutting on it would cut on the signal.</remarks>
+sealed class MonitorOutlier : IShotCheck
+{
+    readonly double _beyond;
+    readonly Dictionary<(string, ShotKind), (double Median, double Deviation)> _usual;
+
+    public MonitorOutlier(double beyond, IReadOnlyList<ShotInfo> shots)
+    {
+        _beyond = beyond;
+        _usual = shots.Where(s => double.IsFinite(s.ProbeMonitor)).GroupBy(s => (s.Condition, s.Kind)).ToDictionary(g => g.Key, g =>
+        {
+            double median = Median([.. g.Select(s => s.ProbeMonitor)]);
+            return (median, 1.4826 * Median([.. g.Select(s => Math.Abs(s.ProbeMonitor - median))]));
+        });
+    }
+
+    public string Reason => "monitor outlier";
+
+    public bool Cuts(in ShotView shot) => _usual.TryGetValue((shot.Info.Condition, shot.Info.Kind), out var usual)
+        && usual.Deviation > 0 && Math.Abs(shot.Info.ProbeMonitor - usual.Median) > _beyond * usual.Deviation;
+
+    static double Median(double[] values)
+    {
+        Array.Sort(values);
+        int half = values.Length / 2;
+        return values.Length % 2 == 1 ? values[half] : 0.5 * (values[half - 1] + values[half]);
+    }
 }
 
 /// <summary>Samples at or beyond the range of the digitiser.</summary>

@@ -32,7 +32,7 @@ sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector
     const int FewestBlocks = 40;
 
 
-    readonly IReadOnlyList<IShotCheck> _checks = ShotChecks.For(settings, shape);
+    readonly IReadOnlyList<IShotCheck> _checks = ShotChecks.For(settings, shape, allShots);
     readonly double _medianDetuning = MedianDetuning(allShots);
     readonly Dictionary<(string, ShotKind), int> _recorded = allShots.CountBy(s => (s.Condition, s.Kind)).ToDictionary();
     readonly Dictionary<(string, ShotKind), GroupSums> _groups = [];

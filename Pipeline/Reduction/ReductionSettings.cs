@@ -11,6 +11,9 @@ public sealed record ReductionSettings
     public double ShortestBinSeconds { get; init; } = 20e-6;
     /// <summary>A shot whose laser reads more than this from the run's median is cut, Hz; null: not checked.</summary>
     public double? UnlockedBeyondHz { get; init; }
+    /// <summary>A shot whose monitor is further than this many scaled median deviations from the median of its kind is cut; null: not
+    /// checked.</summary>
+    public double? MonitorOutlierBeyond { get; init; }
     /// <summary>Cut shots whose record is one constant value.</summary>
     public bool CutFlatRecords { get; init; } = true;
     /// <summary>Cut shots with samples at or beyond the range of the digitiser.</summary>
