@@ -27,6 +27,7 @@ static class CommandLine
         root.Add(StageCommands.Fit());
         root.Add(StageCommands.Compare());
         root.Add(CheckCommand.Make());
+        root.Add(PeekCommand.Make());
         ParseResult parsed = root.Parse(arguments);
         if (parsed.Errors.Count > 0 && parsed.Action is ParseErrorAction error)
         {

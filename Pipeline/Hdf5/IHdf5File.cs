@@ -15,6 +15,14 @@ public enum ElementKind
 /// <param name="RowsPerChunk">Rows that are stored together; 1 where nothing is chunked.</param>
 public sealed record DatasetShape(IReadOnlyList<long> Dimensions, ElementKind Elements, int RowsPerChunk);
 
+/// <summary>A group or dataset, for a reader who does not know the file yet.</summary>
+/// <param name="Path">From the top.</param>
+/// <param name="Dimensions">Null for a group.</param>
+/// <param name="Elements">What a dataset holds.</param>
+/// <param name="Type">As a word, "int16".</param>
+/// <param name="Attributes">Name and value as text.</param>
+public sealed record Hdf5Node(string Path, IReadOnlyList<long>? Dimensions, ElementKind Elements, string Type, IReadOnlyList<(string Name, string Text)> Attributes);
+
 /// <summary>An open HDF5 file, read-only. Every fault names file and path; nothing of the library behind it shows.</summary>
 public interface IHdf5File : IDisposable
 {
@@ -26,6 +34,9 @@ public interface IHdf5File : IDisposable
 
     /// <exception cref="DataFaultException">No such dataset, or one that cannot be read safely.</exception>
     DatasetShape Shape(string path);
+
+    /// <summary>Groups and datasets from the top, parents first, at most so many.</summary>
+    IReadOnlyList<Hdf5Node> Describe(int most);
 
     /// <summary>Names of the groups in a group, in ordinal order.</summary>
     IReadOnlyList<string> Groups(string path);

@@ -112,6 +112,8 @@ sealed class ManagedHdf5File : IHdf5File
             ? holder.Attribute(attribute).Read<string>().TrimEnd('\0', ' ') : ReadNumberAttribute(path, attribute).ToString(CultureInfo.InvariantCulture);
     });
 
+    public IReadOnlyList<Hdf5Node> Describe(int most) => Guarded("/", () => Hdf5Walk.From(_file, most));
+
     public IReadOnlyList<string> Groups(string path) => Guarded(path, () =>
         (Find(path) as IH5Group ?? throw Missing(path)).Children().OfType<IH5Group>().Select(g => g.Name).Order(StringComparer.Ordinal).ToArray());
 
@@ -145,7 +147,9 @@ sealed class ManagedHdf5File : IHdf5File
             throw Refuse(path, $"{bytes:G3} declared bytes in a file of {length}", "data that the file can hold", "the file is damaged or was never filled: record it again");
     }
 
-    ElementKind KindOf(IH5Dataset dataset) => dataset.Type.Class switch
+    ElementKind KindOf(IH5Dataset dataset) => KindOf(dataset.Type);
+
+    internal static ElementKind KindOf(IH5DataType type) => type.Class switch
     {
         H5DataTypeClass.FixedPoint => ElementKind.Integer,
         H5DataTypeClass.FloatingPoint => ElementKind.Real,
