@@ -1,5 +1,6 @@
 using System.Text.Json;
 using Pipeline.Analysis;
+using Pipeline.Apparatus;
 using Pipeline.Comparison;
 using Pipeline.Fitting;
 using Pipeline.Ingest;
@@ -63,6 +64,34 @@ public class ClosureTests
         Assert.Equal([23L], run.Cuts.Single(c => c.Reason == "probe unlocked").Numbers);
         Assert.Equal(60, run.ShotsRead);
         Assert.Equal(58, run.Groups.Sum(g => g.Shots));
+    }
+
+    [SkippableFact]
+    public void Fit_AnalogDetector_CutsBadShotsAndGivesTrueNumberAndMeanVelocity()
+    {
+        var lab = new LabFile("analog-L1");
+        AnalysisSettings counting = LabFile.Settings("templates");
+        var settings = new AnalysisSettings
+        {
+            Background = "templates", Comparison = counting.Comparison,
+            Fit = new FitSettings { FromSeconds = 1.0e-3, VelocityFrom = 5, VelocityTo = 301, VelocityStep = 3 },
+            Reduction = new ReductionSettings { ShotsPerBlock = 5, UnlockedBeyondHz = 100e6, TriggerMarkWithinSeconds = 0.3e-3 },
+        };
+        ShotFileLayout layout = (Hdf5MatrixLayout)LabFile.Matrix with { Meaning = SampleMeaning.Instant, LowestCode = -8192, HighestCode = 8191 };
+        BinnedRun run = lab.Reduce("arrival.h5", layout, settings);
+        Assert.Equal([50L], run.Cuts.Single(c => c.Reason == "missing trigger").Numbers);
+        Assert.Equal([33L], run.Cuts.Single(c => c.Reason == "probe unlocked").Numbers);
+        Assert.Equal([14L], run.Cuts.Single(c => c.Reason == "saturated").Numbers);
+        SpectrumOutcome fit = RunAnalysis.Fit(run, "arrival", lab.Setup(), settings).Single();
+        JsonElement truth = lab.Truth.GetProperty("off");
+        AssertWithin(fit.Number, truth.GetProperty("number_per_shot_expected").GetDouble());
+        AssertWithin(fit.Mean, truth.GetProperty("mean_velocity_m_per_s").GetDouble());
+        Assert.InRange(fit.Number.Total / fit.Number.Value, 0, 0.12);
+        Assert.InRange(fit.Mean.Total, 0, 1.5);
+        // without the time constant of the detector the beam would come out 50 us late, 2.6 m/s too slow
+        Setup blind = lab.Setup();
+        blind = blind with { Detector = blind.Detector with { TimeConstant = default } };
+        Assert.InRange(fit.Mean.Value - RunAnalysis.Fit(run, "arrival", blind, settings).Single().Mean.Value, 1.5, 4);
     }
 
     [SkippableFact]

@@ -26,6 +26,8 @@ sealed class LabFile
     public string Folder { get; }
     public JsonElement Truth { get; }
 
+    bool Analog => _setup.GetProperty("detector").GetProperty("mode").GetString() == "analog";
+
     double Number(string key) => _setup.GetProperty(key).GetDouble();
     double Sigma(string key) => _setup.GetProperty("sigma").GetProperty(key).GetDouble();
     Measured Relative(string key, string sigma) => new(Number(key), Number(key) * Sigma(sigma));
@@ -55,8 +57,10 @@ sealed class LabFile
             },
             Detector = new Detector
             {
-                Kind = DetectorKind.Counting, Efficiency = Relative("detection_efficiency", "detection_efficiency_rel"),
-                DeadTime = new(detector.GetProperty("dead_time_s").GetDouble()), ProbeMonitorZero = new(0.02), AblationMonitorZero = new(0.05),
+                Kind = Analog ? DetectorKind.Analog : DetectorKind.Counting, Efficiency = Relative("detection_efficiency", "detection_efficiency_rel"),
+                DeadTime = Analog ? default : new(detector.GetProperty("dead_time_s").GetDouble()),
+                VoltSecondPerElectron = Analog ? new(detector.GetProperty("volt_second_per_photon").GetDouble()) : null,
+                TimeConstant = Analog ? new(detector.GetProperty("rc_s").GetDouble()) : default, ProbeMonitorZero = new(0.02), AblationMonitorZero = new(0.05),
                 ProbeMonitorNoise = 0.005, AblationMonitorNoise = 0.08,
             },
             Emission = new ExponentialGaussianEmission
@@ -107,7 +111,7 @@ sealed class LabFile
 
     public BinnedRun Reduce(string file, ShotFileLayout layout, AnalysisSettings settings)
     {
-        using IShotSource source = ShotFiles.Open(Path.Combine(Folder, file), layout, DetectorKind.Counting);
+        using IShotSource source = ShotFiles.Open(Path.Combine(Folder, file), layout, Analog ? DetectorKind.Analog : DetectorKind.Counting);
         return Reducer.Reduce(source.Shape, source.Shots, source.ReadBlocks(), Setup().Detector, settings.Reduction);
     }
 }

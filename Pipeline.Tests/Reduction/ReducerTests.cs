@@ -87,11 +87,13 @@ public class ReducerTests
     public void Reduce_ScaleAndOffset_GivePhysicalUnits()
     {
         ShotInfo[] infos = [Info(0), Info(1)];
-        RecordShape shape = new() { Shots = 2, Samples = 1000, OriginSeconds = 0, TickSeconds = 1e-5, Kind = DetectorKind.Analog, Scale = 0.5, Offset = -1 };
+        RecordShape shape = new() { Shots = 2, Samples = 1000, OriginSeconds = -1e-3, TickSeconds = 1e-5, Kind = DetectorKind.Analog, Scale = 0.5, Offset = -1 };
         int[] codes = Noise(4, 2);
         ShotGroup group = Reducer.Reduce(shape, infos, [new ShotBlock(0, infos, codes)], Counting, new ReductionSettings()).Groups.Single();
-        Assert.Equal(0.5 * codes.Sum() - 2000, group.BlockSums.Sum(b => b.Sum()), 9);
-        Assert.Equal(0.5 * (codes[10] + codes[1010]) - 2, group.FullSum[10], 12);
+        // less the mean of the first 90 of the 100 samples before the trigger, shot by shot
+        double first = codes.Take(90).Average(), second = codes.Skip(1000).Take(90).Average();
+        Assert.Equal(0.5 * (codes.Sum() - 1000 * (first + second)), group.BlockSums.Sum(b => b.Sum()), 9);
+        Assert.Equal(0.5 * (codes[10] - first + codes[1010] - second), group.FullSum[10], 12);
     }
 
     [Fact]

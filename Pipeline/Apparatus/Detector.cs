@@ -32,6 +32,8 @@ public sealed record Detector
     public Measured DeadTime { get; init => field = Guard.NotNegative(value); }
     /// <summary>Volt-seconds for each photo-electron; analog only, then required.</summary>
     public Measured? VoltSecondPerElectron { get; init => field = value is { } g ? Guard.Positive(g) : null; }
+    /// <summary>1/e time of the detector's bandwidth (one pole), s; 0 where it does not matter.</summary>
+    public Measured TimeConstant { get; init => field = Guard.NotNegative(value); }
     /// <summary>Reading of the probe monitor without light, V.</summary>
     public Measured ProbeMonitorZero { get; init; }
     /// <summary>Reading of the ablation monitor without a pulse, V.</summary>

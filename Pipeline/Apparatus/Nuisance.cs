@@ -29,6 +29,7 @@ public static class Nuisances
         new("emission width", s => EmissionWidth(s.Emission), (s, m) => s with { Emission = WithWidth(s.Emission, m) }),
         new("emission tail", s => EmissionTail(s.Emission), (s, m) => s with { Emission = WithTail(s.Emission, m) }),
         new("efficiency", s => s.Detector.Efficiency, (s, m) => s with { Detector = s.Detector with { Efficiency = m } }),
+        new("detector time constant", s => s.Detector.TimeConstant, (s, m) => s with { Detector = s.Detector with { TimeConstant = m } }),
         new("probe width", s => s.Probe.Width, (s, m) => s with { Probe = s.Probe with { Width = m } }),
         new("probe angle", s => s.Probe.Angle, (s, m) => s with { Probe = s.Probe with { Angle = m } }),
         new("probe detuning", s => s.Probe.Detuning, (s, m) => s with { Probe = s.Probe with { Detuning = m } }),

@@ -51,15 +51,17 @@ sealed record ShotMeans
         return [.. width.Select((w, i) => w * Math.Max(counts[i], 1.0 / (2 * Half + 1)) / seconds[i])];
     }
 
-    /// <summary>Variance of the summed bins from the scatter of blocks about their mean rate.</summary>
+    /// <summary>Variance of the summed bins from the scatter of blocks about the mean record, scaled to each block: what all bins share, the
+    /// yield of the source, is no independent variance.</summary>
     static double[] BlockScatter(ShotGroup group, double unit)
     {
         int blocks = group.BlockShots.Length;
-        double shots = group.Shots;
-        return [.. Enumerable.Range(0, group.BlockSums[0].Length).Select(i =>
+        double[] mean = [.. Enumerable.Range(0, group.BlockSums[0].Length).Select(i => group.BlockSums.Sum(b => b[i]) / group.Shots)];
+        double norm = mean.Sum(m => m * m);
+        double[] yield = [.. group.BlockSums.Select(b => norm > 0 ? b.Zip(mean, (x, m) => x * m).Sum() / norm : 0)];
+        return [.. Enumerable.Range(0, mean.Length).Select(i =>
         {
-            double mean = group.BlockSums.Sum(b => b[i]) / shots;
-            double squares = Enumerable.Range(0, blocks).Sum(b => Square(group.BlockSums[b][i] - mean * group.BlockShots[b]));
+            double squares = Enumerable.Range(0, blocks).Sum(b => Square(group.BlockSums[b][i] - mean[i] * yield[b]));
             return blocks > 1 ? unit * unit * squares * blocks / (blocks - 1) : double.PositiveInfinity;
         })];
     }

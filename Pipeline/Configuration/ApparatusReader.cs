@@ -92,12 +92,13 @@ static class ApparatusReader
         DeadTimeKind paralysable = kind == DetectorKind.Counting && t.Has("dead_time_kind")
             ? t.Choice("dead_time_kind", ("non-paralysable", DeadTimeKind.NonParalysable), ("paralysable", DeadTimeKind.Paralysable)) : DeadTimeKind.NonParalysable;
         Measured? gain = kind == DetectorKind.Analog ? t.Quantity("volt_second_per_electron", Dimension.VoltSecond) : null;
+        Measured filter = kind == DetectorKind.Analog ? t.Quantity("time_constant", Dimension.Time) : t.OptionalQuantity("time_constant", Dimension.Time) ?? default;
         var (probeZero, ablationZero) = (t.OptionalQuantity("probe_monitor_zero", Dimension.Voltage) ?? default, t.OptionalQuantity("ablation_monitor_zero", Dimension.Voltage) ?? default);
         var (probeNoise, ablationNoise) = (t.OptionalQuantity("probe_monitor_noise", Dimension.Fraction) ?? default, t.OptionalQuantity("ablation_monitor_noise", Dimension.Fraction) ?? default);
         t.RefuseUnknown();
         return t.Build(() => new Detector
         {
-            Kind = kind, Efficiency = efficiency, DeadTime = deadTime, DeadTimeKind = paralysable, VoltSecondPerElectron = gain, ProbeMonitorZero = probeZero,
+            Kind = kind, Efficiency = efficiency, DeadTime = deadTime, DeadTimeKind = paralysable, VoltSecondPerElectron = gain, TimeConstant = filter, ProbeMonitorZero = probeZero,
             AblationMonitorZero = ablationZero, ProbeMonitorNoise = probeNoise.Value, AblationMonitorNoise = ablationNoise.Value,
         });
     }

@@ -58,6 +58,7 @@ static class NightReader
             RelativeBinWidth = relative, ShortestBinSeconds = shortest, UnlockedBeyondHz = unlocked,
             ShotsPerBlock = a.Has("shots_per_block") ? a.Whole("shots_per_block", 1, 100_000) : plain.ShotsPerBlock,
             MonitorOutlierBeyond = Deviations(checks),
+            TriggerMarkWithinSeconds = checks?.OptionalQuantity("trigger_mark_within", Dimension.Time)?.Value,
             CutFlatRecords = checks is null || !checks.Has("cut_flat_records") ? plain.CutFlatRecords : checks.Flag("cut_flat_records"),
             CutSaturated = checks is null || !checks.Has("cut_saturated") ? plain.CutSaturated : checks.Flag("cut_saturated"),
         };

@@ -35,6 +35,7 @@ sealed class FoldSums
     readonly YieldTable _yield;
     readonly TransitProfile _transit;
     readonly double[] _edges, _signal, _variance, _spectrum, _weights = new double[TransitProfile.Count];
+    readonly double[] _delays;
     double _squares, _speed, _below;
     int _outside;
 
@@ -45,6 +46,7 @@ sealed class FoldSums
         _offset = setup.Beamline.TriggerOffset.Value;
         _yield = new YieldTable(setup);
         _transit = new TransitProfile(setup.Probe);
+        _delays = Delays(setup.Detector.TimeConstant.Value);
         _edges = axis.EdgesInSeconds();
         (_signal, _variance, _spectrum) = (new double[axis.Bins], new double[axis.Bins], new double[grid.Cells]);
     }
@@ -75,14 +77,25 @@ sealed class FoldSums
         (double counts, double pumping) = _yield.At(speed);
         _transit.Weights(pumping, _weights);
         for (int n = 0; n < _weights.Length; n++)
-        {
-            int at = Array.BinarySearch(_edges, crossing + _transit.Places[n] / speed);
-            int bin = at >= 0 ? at : ~at - 1;
-            if (bin < 0 || bin >= _axis.Bins) continue;
-            // the places of one molecule vary together: its whole square is shared out, so that the variance of the sum is right
-            _signal[bin] += weight * counts * _weights[n];
-            _variance[bin] += weight * counts * weight * counts * _weights[n];
-        }
+            foreach (double delay in _delays)
+            {
+                int at = Array.BinarySearch(_edges, crossing + _transit.Places[n] / speed + delay);
+                int bin = at >= 0 ? at : ~at - 1;
+                if (bin < 0 || bin >= _axis.Bins) continue;
+                // the places of one molecule vary together: its whole square is shared out, so that the variance of the sum is right
+                double share = _weights[n] / _delays.Length;
+                _signal[bin] += weight * counts * share;
+                _variance[bin] += weight * counts * weight * counts * share;
+            }
+    }
+
+    /// <summary>Delays of a one-pole filter, equally likely: the mean of each twelfth of the exponential, so that their mean is exact.</summary>
+    static double[] Delays(double timeConstant)
+    {
+        if (timeConstant == 0) return [0];
+        const int Parts = 12;
+        static double Beyond(double p) => p >= 1 ? 0 : (1 - p) * (1 - Math.Log(1 - p));
+        return [.. Enumerable.Range(0, Parts).Select(k => timeConstant * Parts * (Beyond((double)k / Parts) - Beyond((k + 1.0) / Parts)))];
     }
 
     public FoldedPrediction Result() => new()

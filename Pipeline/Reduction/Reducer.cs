@@ -33,6 +33,8 @@ sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector
 
 
     readonly IReadOnlyList<IShotCheck> _checks = ShotChecks.For(settings, shape, allShots);
+    /// <summary>Analog samples are summed in volts, less their baseline; counts as recorded.</summary>
+    readonly RecordShape _sumShape = shape.Kind == DetectorKind.Analog ? shape with { Scale = 1, Offset = 0 } : shape;
     readonly double _medianDetuning = MedianDetuning(allShots);
     readonly Dictionary<(string, ShotKind), int> _recorded = allShots.CountBy(s => (s.Condition, s.Kind)).ToDictionary();
     readonly Dictionary<(string, ShotKind), GroupSums> _groups = [];
@@ -48,7 +50,8 @@ sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector
         for (int k = 0; k < block.Shots.Count; k++)
         {
             _read++;
-            if (block.Codes is { } codes) AddShot(block.Shots[k], codes.AsSpan(k * shape.Samples, shape.Samples));
+            if (shape.Kind == DetectorKind.Analog) AddAnalog(block, k);
+            else if (block.Codes is { } codes) AddShot(block.Shots[k], codes.AsSpan(k * shape.Samples, shape.Samples));
             else AddShot(block.Shots[k], block.Values.AsSpan(k * shape.Samples, shape.Samples));
         }
     }
@@ -63,6 +66,19 @@ sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector
     {
         double low = System.Numerics.Tensors.TensorPrimitives.Min(values), high = System.Numerics.Tensors.TensorPrimitives.Max(values);
         if (Kept(info, low, high)) Group(info).Add(values, Probe(info), Ablation(info));
+    }
+
+    /// <summary>Analog shots in volts, less their own baseline.</summary>
+    void AddAnalog(ShotBlock block, int shot)
+    {
+        var range = new Range(shot * shape.Samples, (shot + 1) * shape.Samples);
+        double[] recorded = block.Codes is { } codes ? Array.ConvertAll(codes[range], c => (double)c) : block.Values![range];
+        ShotInfo info = block.Shots[shot];
+        if (!Kept(info, recorded.Min(), recorded.Max())) return;
+        for (int i = 0; i < recorded.Length; i++) recorded[i] = recorded[i] * shape.Scale + shape.Offset;
+        AnalogRecord record = AnalogRecord.Of(recorded, shape);
+        if (settings.TriggerMarkWithinSeconds is { } within && !record.HasMark(within)) Cut("missing trigger", info.Number);
+        else Group(info).Add(record.Volts, Probe(info), Ablation(info));
     }
 
     bool Kept(ShotInfo info, double low, double high)
@@ -91,7 +107,7 @@ sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector
     GroupSums Group(ShotInfo info)
     {
         if (!_groups.TryGetValue((info.Condition, info.Kind), out GroupSums? sums))
-            _groups[(info.Condition, info.Kind)] = sums = new GroupSums(info.Condition, info.Kind, shape, axis, ShotsPerBlock(info));
+            _groups[(info.Condition, info.Kind)] = sums = new GroupSums(info.Condition, info.Kind, _sumShape, axis, ShotsPerBlock(info));
         return sums;
     }
 

@@ -14,6 +14,9 @@ public sealed record ReductionSettings
     /// <summary>A shot whose monitor is further than this many scaled median deviations from the median of its kind is cut; null: not
     /// checked.</summary>
     public double? MonitorOutlierBeyond { get; init; }
+    /// <summary>Analog: cut shots without a mark (pick-up or flash) of more than five times their noise in this time after the trigger, s;
+    /// null: not checked.</summary>
+    public double? TriggerMarkWithinSeconds { get; init; }
     /// <summary>Cut shots whose record is one constant value.</summary>
     public bool CutFlatRecords { get; init; } = true;
     /// <summary>Cut shots with samples at or beyond the range of the digitiser.</summary>

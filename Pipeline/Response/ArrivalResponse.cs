@@ -38,7 +38,7 @@ sealed class ArrivalCells
 
     public ArrivalCells(Setup setup, FlightMap flight, SignalAxis axis)
     {
-        _emission = setup.Emission;
+        _emission = FilteredEmission.Of(setup.Emission, setup.Detector.TimeConstant.Value);
         _flight = flight;
         _edges = [.. axis.EdgesInSeconds().Select(e => e + setup.Beamline.TriggerOffset.Value)];
         _yield = new DetectionYield(setup);
