@@ -28,6 +28,11 @@ static class CommandLine
         root.Add(StageCommands.Compare());
         root.Add(CheckCommand.Make());
         root.Add(PeekCommand.Make());
+        if (arguments.Length == 0)
+        {
+            await root.Parse(["--help"]).InvokeAsync().ConfigureAwait(false);
+            return Usage;
+        }
         ParseResult parsed = root.Parse(arguments);
         if (parsed.Errors.Count > 0 && parsed.Action is ParseErrorAction error)
         {
@@ -43,6 +48,11 @@ static class CommandLine
         {
             await Console.Error.WriteLineAsync(e.Fault.ToString()).ConfigureAwait(false);
             return Usage;
+        }
+        catch (Exception e)
+        {
+            await Console.Error.WriteLineAsync($"a defect of the program; please report it with what you typed: {e}").ConfigureAwait(false);
+            return SomeFailed;
         }
     }
 }

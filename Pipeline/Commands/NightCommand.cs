@@ -4,6 +4,7 @@ using Pipeline.Analysis;
 using Pipeline.Comparison;
 using Pipeline.Configuration;
 using Pipeline.Night;
+using Pipeline.Results;
 using Serilog;
 using Serilog.Core;
 using Serilog.Events;
@@ -28,7 +29,7 @@ static class NightCommand
                 throw new DataFaultException(dayPath, $"no file that a [[runs]] rule matches ({string.Join(", ", lab.Runs.Select(r => r.Match))})", "at least one run",
                     "name the right folder, or correct the rules in night.toml");
             string results = Path.Combine(parsed.GetRequiredValue(folders.Results), day.Name);
-            Directory.CreateDirectory(results);
+            Atomically.MakeFolder(results);
             using Logger log = OpenLog(Path.Combine(results, "night.log.jsonl"));
             NightOutcome night = NightWork.Run(lab, day, results, log);
             Summary(night, results);

@@ -58,10 +58,14 @@ public sealed class Hdf5Tree
             ((H5File)_root).Write(aside);
             File.Move(aside, path, overwrite: true);
         }
-        catch
+        catch (Exception e) when (e is IOException or UnauthorizedAccessException)
         {
-            File.Delete(aside);
-            throw;
+            throw new DataFaultException(Path.GetFileName(path), $"a result that cannot be written ({e.Message})", "a folder with space and permission to write",
+                "free space, or name another folder with --results");
+        }
+        finally
+        {
+            if (File.Exists(aside)) File.Delete(aside);
         }
     }
 }

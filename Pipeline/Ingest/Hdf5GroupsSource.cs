@@ -7,64 +7,47 @@ using Pipeline.Reduction;
 namespace Pipeline.Ingest;
 
 /// <summary>One HDF5 group a shot, housekeeping as attributes.</summary>
-sealed class Hdf5GroupsSource : IShotSource
+sealed class Hdf5GroupsSource : Hdf5ShotSource
 {
     readonly Hdf5GroupsLayout _layout;
-    readonly IHdf5File _file;
-    readonly string _name;
-    readonly string[] _groups;
-    readonly ShotInfo[] _shots;
+    string[] _groups = [];
 
-    public Hdf5GroupsSource(string path, Hdf5GroupsLayout layout, DetectorKind kind)
+    public Hdf5GroupsSource(string path, Hdf5GroupsLayout layout, DetectorKind kind) : base(path)
     {
-        (_layout, _name, InputFiles) = (layout, Path.GetFileName(path), [path]);
-        _file = Hdf5Files.Open(path);
-        try
+        _layout = layout;
+        Begin(() =>
         {
-            _groups = [.. _file.Groups("/").Where(g => FileSystemName.MatchesSimpleExpression(layout.Groups, g, ignoreCase: false))];
-            if (_groups.Length == 0) throw new DataFaultException(_name, $"no group \"{layout.Groups}\"", "one group a shot", "correct samples.groups in the layout");
-            _shots = ReadShots();
-            Shape = StatedShape.Of(layout.Axis, layout.Meaning, _groups.Length, kind) with { LowestCode = layout.LowestCode, HighestCode = layout.HighestCode };
-        }
-        catch
-        {
-            _file.Dispose();
-            throw;
-        }
+            _groups = [.. File.Groups("/").Where(g => FileSystemName.MatchesSimpleExpression(layout.Groups, g, ignoreCase: false))];
+            if (_groups.Length == 0) throw new DataFaultException(Name, $"no group \"{layout.Groups}\"", "one group a shot", "correct samples.groups in the layout");
+            return (StatedShape.Of(layout.Axis, layout.Meaning, _groups.Length, kind) with { LowestCode = layout.LowestCode, HighestCode = layout.HighestCode }, ReadShots());
+        });
     }
 
-    public RecordShape Shape { get; }
-    public IReadOnlyList<string> InputFiles { get; }
-    public IReadOnlyList<ShotInfo> Shots => _shots;
-    public string Reader => _file.Reader;
-
-    public void Dispose() => _file.Dispose();
-
-    public IEnumerable<ShotBlock> ReadBlocks()
+    public override IEnumerable<ShotBlock> ReadBlocks()
     {
         for (int k = 0; k < _groups.Length; k++)
         {
             string path = $"{_groups[k]}/{_layout.Samples}";
-            DatasetShape shape = _file.Shape(path);
+            DatasetShape shape = File.Shape(path);
             if (shape.Dimensions.Count != 1 || shape.Dimensions[0] != Shape.Samples)
-                throw new DataFaultException($"{_name}, {path}", $"shape [{string.Join(", ", shape.Dimensions)}]", $"[{Shape.Samples}], as the layout states", "correct samples.samples in the layout, or record the shot again");
+                throw new DataFaultException($"{Name}, {path}", $"shape [{string.Join(", ", shape.Dimensions)}]", $"[{Shape.Samples}], as the layout states", "correct samples.samples in the layout, or record the shot again");
             yield return shape.Elements == ElementKind.Integer
-                ? new ShotBlock(k, [_shots[k]], _file.ReadIntegers(path, 0, Shape.Samples)) : new ShotBlock(k, [_shots[k]], Finite(path, _file.ReadReals(path, 0, Shape.Samples)));
+                ? new ShotBlock(k, ShotsFrom(k, 1), File.ReadIntegers(path, 0, Shape.Samples)) : new ShotBlock(k, ShotsFrom(k, 1), Finite(path, File.ReadReals(path, 0, Shape.Samples)));
         }
     }
 
     double[] Finite(string path, double[] values)
     {
         int bad = Array.FindIndex(values, v => !double.IsFinite(v));
-        return bad < 0 ? values : throw new DataFaultException($"{_name}, {path}, sample {bad}", values[bad].ToString(CultureInfo.InvariantCulture), "a finite number", "record the shot again");
+        return bad < 0 ? values : throw new DataFaultException($"{Name}, {path}, sample {bad}", values[bad].ToString(CultureInfo.InvariantCulture), "a finite number", "record the shot again");
     }
 
     ShotInfo[] ReadShots()
     {
         ShotColumns c = _layout.Shots;
-        double[]? Numbers(string? attribute) => attribute is null ? null : [.. _groups.Select(g => _file.ReadNumberAttribute(g, attribute))];
-        string[] Labels(string attribute) => [.. _groups.Select(g => _file.ReadTextAttribute(g, attribute))];
+        double[]? Numbers(string? attribute) => attribute is null ? null : [.. _groups.Select(g => File.ReadNumberAttribute(g, attribute))];
+        string[] Labels(string attribute) => [.. _groups.Select(g => File.ReadTextAttribute(g, attribute))];
         return new ShotTable(Numbers(c.Number), Labels(c.Kind), c.Condition is { } condition ? Labels(condition) : null, Numbers(c.ProbeMonitor),
-            Numbers(c.AblationMonitor), Numbers(c.Detuning)).ToShots(_name, c);
+            Numbers(c.AblationMonitor), Numbers(c.Detuning)).ToShots(Name, c);
     }
 }

@@ -5,46 +5,30 @@ using Pipeline.Reduction;
 
 namespace Pipeline.Ingest;
 
-/// <summary>Photon time stamps, binned on reading; stamps before and after the record are counted and said.</summary>
-sealed class Hdf5StampsSource : IShotSource
+/// <summary>Photon time stamps, binned on reading; a stamp outside the stated record is a fault.</summary>
+sealed class Hdf5StampsSource : Hdf5ShotSource
 {
     const int StampsAtOnce = 4_000_000, BlockSamples = 16_000_000;
     readonly Hdf5StampsLayout _layout;
-    readonly IHdf5File _file;
-    readonly string _name;
-    readonly ShotInfo[] _shots;
-    readonly long _stamps;
+    long _stamps;
 
-    public Hdf5StampsSource(string path, Hdf5StampsLayout layout, DetectorKind kind)
+    public Hdf5StampsSource(string path, Hdf5StampsLayout layout, DetectorKind kind) : base(path)
     {
-        (_layout, _name, InputFiles) = (layout, Path.GetFileName(path), [path]);
-        if (kind != DetectorKind.Counting) throw new DataFaultException(_name, "time stamps for an analog detector", "a counting detector", "correct detector.kind in apparatus.toml");
-        _file = Hdf5Files.Open(path);
-        try
+        _layout = layout;
+        Begin(() =>
         {
-            _shots = ShotTable.ReadHdf5(_file, layout.Shots).ToShots(_name, layout.Shots);
-            _stamps = _file.Shape(layout.Times).Dimensions[0];
-            if (_file.Shape(layout.ShotIndex).Dimensions[0] != _stamps)
-                throw new DataFaultException($"{_name}, {layout.ShotIndex}", $"{_file.Shape(layout.ShotIndex).Dimensions[0]} values", $"{_stamps}, one for each time", "the file is damaged: record it again");
-            Shape = StatedShape.Of(layout.Axis, layout.Meaning, _shots.Length, kind);
-        }
-        catch
-        {
-            _file.Dispose();
-            throw;
-        }
+            if (kind != DetectorKind.Counting) throw new DataFaultException(Name, "time stamps for an analog detector", "a counting detector", "correct detector.kind in apparatus.toml");
+            ShotInfo[] shots = ShotTable.ReadHdf5(File, layout.Shots).ToShots(Name, layout.Shots);
+            _stamps = File.Shape(layout.Times).Dimensions[0];
+            if (File.Shape(layout.ShotIndex).Dimensions[0] != _stamps)
+                throw new DataFaultException($"{Name}, {layout.ShotIndex}", $"{File.Shape(layout.ShotIndex).Dimensions[0]} values", $"{_stamps}, one for each time", "the file is damaged: record it again");
+            return (StatedShape.Of(layout.Axis, layout.Meaning, shots.Length, kind), shots);
+        });
     }
 
-    public RecordShape Shape { get; }
-    public IReadOnlyList<string> InputFiles { get; }
-    public IReadOnlyList<ShotInfo> Shots => _shots;
-    public string Reader => _file.Reader;
-
-    public void Dispose() => _file.Dispose();
-
-    public IEnumerable<ShotBlock> ReadBlocks()
+    public override IEnumerable<ShotBlock> ReadBlocks()
     {
-        int rows = Math.Clamp(BlockSamples / Shape.Samples, 1, _shots.Length), first = 0, last = 0;
+        int rows = Math.Clamp(BlockSamples / Shape.Samples, 1, Shape.Shots), first = 0, last = 0;
         int[] codes = Empty(first, rows);
         for (long from = 0; from < _stamps; from += StampsAtOnce)
         {
@@ -63,28 +47,28 @@ sealed class Hdf5StampsSource : IShotSource
                 codes[(shot - first) * Shape.Samples + sample]++;
             }
         }
-        for (; first < _shots.Length; first += rows, codes = Empty(first, rows)) yield return Block(first, rows, codes);
+        for (; first < Shape.Shots; first += rows, codes = Empty(first, rows)) yield return Block(first, rows, codes);
     }
 
-    int[] Empty(int first, int rows) => new int[Math.Max(0, Math.Min(rows, _shots.Length - first)) * Shape.Samples];
+    int[] Empty(int first, int rows) => new int[Math.Max(0, Math.Min(rows, Shape.Shots - first)) * Shape.Samples];
 
-    ShotBlock Block(int first, int rows, int[] codes) => new(first, _shots[first..Math.Min(first + rows, _shots.Length)], codes);
+    ShotBlock Block(int first, int rows, int[] codes) => new(first, ShotsFrom(first, rows), codes);
 
     int ShotOf(double index, int last, long stamp)
     {
-        if (index >= last && index < _shots.Length && index == Math.Floor(index)) return (int)index;
-        throw new DataFaultException($"{_name}, {_layout.ShotIndex}, stamp {stamp.ToString(CultureInfo.InvariantCulture)}", index.ToString(CultureInfo.InvariantCulture),
-            $"a position that does not fall, below {_shots.Length}", "sort the stamps by shot");
+        if (index >= last && index < Shape.Shots && index == Math.Floor(index)) return (int)index;
+        throw new DataFaultException($"{Name}, {_layout.ShotIndex}, stamp {stamp.ToString(CultureInfo.InvariantCulture)}", index.ToString(CultureInfo.InvariantCulture),
+            $"a position that does not fall, below {Shape.Shots}", "sort the stamps by shot");
     }
 
     int SampleOf(double time, long stamp)
     {
         double place = Math.Floor((time * _layout.TimeFactor - _layout.Axis.Start) / _layout.Axis.Step);
         if (place >= 0 && place < Shape.Samples) return (int)place;
-        throw new DataFaultException($"{_name}, {_layout.Times}, stamp {stamp.ToString(CultureInfo.InvariantCulture)}", time.ToString(CultureInfo.InvariantCulture),
+        throw new DataFaultException($"{Name}, {_layout.Times}, stamp {stamp.ToString(CultureInfo.InvariantCulture)}", time.ToString(CultureInfo.InvariantCulture),
             $"a time inside the record, {_layout.Axis.Start:G6} s to {_layout.Axis.Start + Shape.Samples * _layout.Axis.Step:G6} s", "correct start, step and samples in the layout");
     }
 
-    double[] Numbers(string path, long from, int count) => _file.Shape(path).Elements == ElementKind.Integer
-        ? Array.ConvertAll(_file.ReadIntegers(path, from, count), v => (double)v) : _file.ReadReals(path, from, count);
+    double[] Numbers(string path, long from, int count) => File.Shape(path).Elements == ElementKind.Integer
+        ? Array.ConvertAll(File.ReadIntegers(path, from, count), v => (double)v) : File.ReadReals(path, from, count);
 }

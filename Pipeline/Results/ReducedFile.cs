@@ -23,7 +23,7 @@ static class ReducedFile
         tree.Dataset("group_conditions", run.Groups.Select(g => g.Condition).ToArray());
         tree.Dataset("group_kinds", run.Groups.Select(g => g.Kind.ToString()).ToArray());
         for (int k = 0; k < run.Groups.Count; k++) WriteGroup(tree.Group($"group_{k}"), run.Groups[k], run.Axis.Bins);
-        Directory.CreateDirectory(folder);
+        Atomically.MakeFolder(folder);
         tree.Write(Path.Combine(folder, Name));
     }
 

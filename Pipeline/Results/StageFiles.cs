@@ -45,7 +45,7 @@ static class Atomically
         string aside = path + ".part";
         try
         {
-            Directory.CreateDirectory(Path.GetDirectoryName(path)!);
+            MakeFolder(Path.GetDirectoryName(path)!);
             File.WriteAllBytes(aside, content);
             File.Move(aside, path, overwrite: true);
         }
@@ -53,6 +53,17 @@ static class Atomically
         {
             throw new DataFaultException(Path.GetFileName(path), $"a result that cannot be written ({e.Message})", "a folder with space and permission to write",
                 "free space, or name another folder with --results");
+        }
+    }
+
+    /// <summary>A folder for results.</summary>
+    /// <exception cref="DataFaultException">It cannot be made.</exception>
+    public static void MakeFolder(string path)
+    {
+        try { Directory.CreateDirectory(path); }
+        catch (Exception e) when (e is IOException or UnauthorizedAccessException)
+        {
+            throw new DataFaultException(path, $"a folder that cannot be made ({e.Message})", "a place with permission to write", "name another folder with --results");
         }
     }
 
