@@ -139,6 +139,18 @@ public class NightTests
     }
 
     [Fact]
+    public async Task Fit_ManyShotsCut_SaysWhatAllOfThemWouldGive()
+    {
+        using var demo = new DemoDay("0957-free-wide");
+        string night = Path.Combine(demo.Root, "config", "night.toml");
+        File.WriteAllText(night, File.ReadAllText(night).Replace("unlocked_beyond = \"40 MHz\"", "unlocked_beyond = \"1 MHz\"", StringComparison.Ordinal));
+        await Run("night", demo.Day, "--results", demo.Results);
+        JsonElement result = Result(Path.Combine(demo.Results, "2026-11-23"), "0957-free-wide");
+        Assert.True(result.GetProperty("shots").GetProperty("cut")[0].GetProperty("count").GetInt32() >= 2);
+        Assert.Contains(result.GetProperty("remarks").EnumerateArray(), r => r.GetString()!.Contains("with all of them the number would be", StringComparison.Ordinal));
+    }
+
+    [Fact]
     public async Task Check_ShippedAndBroken_SaysSo()
     {
         using var demo = new DemoDay("1515-weak");

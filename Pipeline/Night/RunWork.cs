@@ -7,6 +7,7 @@ using Pipeline.Fitting;
 using Pipeline.Ingest;
 using Pipeline.Predictions;
 using Pipeline.Reduction;
+using Pipeline.Reports;
 using Pipeline.Results;
 
 namespace Pipeline.Night;
@@ -15,6 +16,7 @@ namespace Pipeline.Night;
 /// program.</summary>
 public sealed class RunWork
 {
+    const double ManyCuts = 0.02;
     readonly LabConfiguration _lab;
     readonly DayFolder _day;
     readonly RunFile _run;
@@ -59,7 +61,7 @@ public sealed class RunWork
         IReadOnlyList<SpectrumOutcome>? known = StageFiles.ReadFits(Folder, _fingerprint);
         reused = known is not null;
         if (known is not null) return known;
-        IReadOnlyList<SpectrumOutcome> fits = RunAnalysis.Fit(run, _run.Rule.Mode, _lab.Setup, _lab.Analysis);
+        IReadOnlyList<SpectrumOutcome> fits = WithUncut(run, RunAnalysis.Fit(run, _run.Rule.Mode, _lab.Setup, _lab.Analysis));
         StageFiles.WriteFits(Folder, _fingerprint, fits);
         return fits;
     }
@@ -91,6 +93,20 @@ public sealed class RunWork
         RunResults.Write(Folder, outcome);
         return outcome;
     }
+
+    /// <summary>Where more than 2 % of the shots were cut, a remark says what the numbers would be with all of them.</summary>
+    IReadOnlyList<SpectrumOutcome> WithUncut(BinnedRun run, IReadOnlyList<SpectrumOutcome> fits)
+    {
+        double share = (double)run.Cuts.Sum(c => c.Numbers.Count) / run.ShotsRead;
+        if (share <= ManyCuts) return fits;
+        using IShotSource source = ShotFiles.Open(_run.Path, _run.Layout, _lab.Setup.Detector.Kind);
+        BinnedRun uncut = Reducer.Reduce(source.Shape, source.Shots, source.ReadBlocks(), _lab.Setup.Detector, _lab.Analysis.Reduction.WithoutCuts());
+        IReadOnlyList<SpectrumOutcome> all = RunAnalysis.Fit(uncut, _run.Rule.Mode, _lab.Setup, _lab.Analysis);
+        return [.. fits.Select(f => f with { Remarks = [.. f.Remarks, UncutRemark(share, f, all.FirstOrDefault(a => a.Signal.Condition == f.Signal.Condition))] })];
+    }
+
+    static string UncutRemark(double share, SpectrumOutcome cut, SpectrumOutcome? all) => string.Create(System.Globalization.CultureInfo.InvariantCulture,
+        $"{cut.Signal.Condition}: {100 * share:F1} % of the shots of the run were cut; with all of them the number would be {(all is null ? "not determined" : Numbers.WithTotal(all.Number))} a shot and the mean velocity {(all is null ? "not determined" : Numbers.WithTotal(all.Mean))} m/s");
 
     PredictionRule? RuleFor(string condition) => _lab.Predictions.FirstOrDefault(p =>
         p.Condition == condition && FileSystemName.MatchesSimpleExpression(p.Runs, _run.Name, ignoreCase: false));

@@ -21,4 +21,8 @@ public sealed record ReductionSettings
     public bool CutFlatRecords { get; init; } = true;
     /// <summary>Cut shots with samples at or beyond the range of the digitiser.</summary>
     public bool CutSaturated { get; init; } = true;
+
+    /// <summary>The same bins and blocks, every shot kept.</summary>
+    public ReductionSettings WithoutCuts() =>
+        this with { UnlockedBeyondHz = null, MonitorOutlierBeyond = null, TriggerMarkWithinSeconds = null, CutFlatRecords = false, CutSaturated = false };
 }
