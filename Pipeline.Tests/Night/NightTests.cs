@@ -151,6 +151,27 @@ public class NightTests
     }
 
     [Fact]
+    public async Task Follow_FileThatGrows_IsAnalysedWhenItIsWhole()
+    {
+        using var demo = new DemoDay("1515-weak");
+        string path = Path.Combine(demo.Day, "1515-weak.h5");
+        byte[] whole = File.ReadAllBytes(path);
+        File.WriteAllBytes(path, whole[..(whole.Length / 2)]);
+        Task<(int Code, string Said)> following = Run("follow", demo.Day, "--results", demo.Results, "--every", "0.2", "--until-idle", "10");
+        await Told(Path.Combine(demo.Results, "2026-11-23", "follow.log.jsonl"), "not analysed yet");
+        await File.WriteAllBytesAsync(path, whole);
+        (int code, string said) = await following;
+        Assert.Equal(CommandLine.SomeDoNot, code);
+        Assert.Contains("not analysed yet", said, StringComparison.Ordinal);
+        string results = Path.Combine(demo.Results, "2026-11-23");
+        Assert.Equal("undecided", Judgement(results, "1515-weak"));
+        // started again it fits nothing anew: the stage files keep their bytes and times
+        DateTime fitted = File.GetLastWriteTimeUtc(Path.Combine(results, "1515-weak", "fit.json"));
+        await Run("follow", demo.Day, "--results", demo.Results, "--every", "0.1", "--until-idle", "0.5");
+        Assert.Equal(fitted, File.GetLastWriteTimeUtc(Path.Combine(results, "1515-weak", "fit.json")));
+    }
+
+    [Fact]
     public async Task Check_ShippedAndBroken_SaysSo()
     {
         using var demo = new DemoDay("1515-weak");
@@ -160,6 +181,18 @@ public class NightTests
         (int code, string said) = await Run("check", "--config", config);
         Assert.Equal(CommandLine.Usage, code);
         Assert.Contains("night.toml, line ", said, StringComparison.Ordinal);
+    }
+
+    /// <summary>Waits until a log that is still being written says something.</summary>
+    static async Task Told(string log, string what)
+    {
+        for (int tries = 0; tries < 600; tries++, await Task.Delay(100))
+        {
+            if (!File.Exists(log)) continue;
+            using var reader = new StreamReader(new FileStream(log, FileMode.Open, FileAccess.Read, FileShare.ReadWrite | FileShare.Delete));
+            if ((await reader.ReadToEndAsync()).Contains(what, StringComparison.Ordinal)) return;
+        }
+        Assert.Fail($"the log never said \"{what}\"");
     }
 
     static string Judgement(string results, string run) => Result(results, run).GetProperty("verdict").GetProperty("judgement").GetString()!;

@@ -23,6 +23,7 @@ static class CommandLine
             Exit codes: 0 all agree, 1 some disagree or are undecided, 2 usage or configuration, 3 some could not be analysed.
             """);
         root.Add(NightCommand.Make());
+        root.Add(FollowCommand.Make());
         root.Add(StageCommands.Ingest());
         root.Add(StageCommands.Fit());
         root.Add(StageCommands.Compare());

@@ -39,7 +39,7 @@ static class NightCommand
     }
 
     /// <summary>Readable on the console, one JSON object a line in the file.</summary>
-    static Logger OpenLog(string path)
+    internal static Logger OpenLog(string path)
     {
         File.Delete(path);
         return new LoggerConfiguration()
@@ -49,7 +49,7 @@ static class NightCommand
             .CreateLogger();
     }
 
-    static void Summary(NightOutcome night, string results)
+    internal static void Summary(NightOutcome night, string results)
     {
         Console.WriteLine();
         Console.WriteLine(Lines.Head);
@@ -62,6 +62,6 @@ static class NightCommand
             $"{night.Day}: {Count(Judgement.Agrees)} agree, {Count(Judgement.Disagrees)} disagree, {Count(Judgement.Undecided)} undecided, {night.Failed.Count} not analysed. Page: {Path.Combine(results, "night.html")}"));
     }
 
-    static int ExitCode(NightOutcome night) => night.Failed.Count > 0 ? CommandLine.SomeFailed
+    internal static int ExitCode(NightOutcome night) => night.Failed.Count > 0 ? CommandLine.SomeFailed
         : night.Runs.All(r => r.Verdict.Judgement == Judgement.Agrees) ? CommandLine.AllAgree : CommandLine.SomeDoNot;
 }

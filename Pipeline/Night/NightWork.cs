@@ -47,7 +47,8 @@ public static class NightWork
         return night;
     }
 
-    static RunOutcome Analyse(LabConfiguration lab, DayFolder day, RunFile file, string results)
+    /// <summary>All stages of one run.</summary>
+    internal static RunOutcome Analyse(LabConfiguration lab, DayFolder day, RunFile file, string results)
     {
         var work = new RunWork(lab, day, file, results);
         Reduction.BinnedRun run = work.Ingest(out _);
