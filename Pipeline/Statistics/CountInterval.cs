@@ -5,7 +5,8 @@ namespace Pipeline.Statistics;
 
 /// <summary>Exact limits on a Poisson mean from one count.</summary>
 /// <remarks>Quantiles of chi-square: Garwood, Biometrika 28, 437 (1936); one-sided limits at S sigma as tabulated by Gehrels, ApJ 303, 336
-/// (1986). The chance beyond a limit is met to 2e-8 of itself or better up to 5 sigma.</remarks>
+/// (1986). The chance beyond a limit is met to 2e-8 of itself or better up to 5 sigma and 10,000 counts; at the largest count
+/// there is the limit is 3e-6 sigma off.</remarks>
 public static class CountInterval
 {
     /// <summary>Beyond so many sigma 1 minus the confidence has lost four of its digits to rounding.</summary>
