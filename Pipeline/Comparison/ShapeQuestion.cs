@@ -47,6 +47,7 @@ sealed class ShapeQuestion : IQuestion
     {
         Vector<double> stretch = rate * both.Settings.TimeMatters * Vector<double>.Build.DenseOfArray(both.Stretch);
         double cross = stretch * weight * predicted;
-        return stretch * weight * stretch - cross * cross / (predicted * weight * predicted);
+        // never negative but by rounding, after Cauchy and Schwarz
+        return Math.Max(0, stretch * weight * stretch - cross * cross / (predicted * weight * predicted));
     }
 }

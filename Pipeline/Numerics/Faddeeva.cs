@@ -4,17 +4,18 @@ namespace Pipeline.Numerics;
 
 /// <summary>w(z) = exp(-z^2) erfc(-iz) in the upper half plane.</summary>
 /// <remarks>Rational expansion of Weideman, SIAM J. Numer. Anal. 31, 1497 (1994), with 64 terms; for large arguments the continued fraction
-/// of Laplace. Error below 1e-13 of |w|.</remarks>
+/// of Laplace. Error below 2e-15 of |w| at 1,500 points against 40 digits; next to the real axis the real part is known to that share of |w|,
+/// not of itself.</remarks>
 static class Faddeeva
 {
     const int Terms = 64;
     static readonly double Scale = Math.Sqrt(Terms / Math.Sqrt(2));
     static readonly double[] Coefficients = Expand();
 
-    /// <param name="z">Imaginary part &gt;= 0.</param>
+    /// <param name="z">Finite, imaginary part &gt;= 0.</param>
     public static Complex W(Complex z)
     {
-        if (!(z.Imaginary >= 0)) throw new ArgumentOutOfRangeException(nameof(z), z, "must lie in the upper half plane");
+        if (!(z.Imaginary >= 0) || !Complex.IsFinite(z)) throw new ArgumentOutOfRangeException(nameof(z), z, "must be finite and lie in the upper half plane");
         if (z.Magnitude > 12) return Fraction(z);
         Complex below = Scale - Complex.ImaginaryOne * z, ratio = (Scale + Complex.ImaginaryOne * z) / below, sum = 0;
         for (int k = Terms - 1; k >= 0; k--) sum = sum * ratio + Coefficients[k];
