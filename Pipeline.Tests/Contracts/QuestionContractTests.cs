@@ -54,6 +54,19 @@ public class QuestionContractTests
     }
 
     [Fact]
+    public void Case_PredictionOutsideTheWindow_IsAFault()
+    {
+        var late = new MoleculeList([0.5], [0], [150], [0], [0], [0], [0], [1], MoleculeWeighting.Crossings);
+        ComparisonCase drawn = Draw(new MathNet.Numerics.Random.Xoshiro256StarStar(1, threadSafe: false), 1, 1, shots: 2, blocks: 2);
+        Assert.True(drawn.Predicted.Sum() > 0);
+        var made = new MadeUpRun();
+        NetSignal signal = BackgroundModels.Named("steady").Subtract(made.Make(), "off", Setup.Detector);
+        var outcome = new SpectrumOutcome { Signal = signal, Flight = "free", Spectra = [], Below = new BelowCapture(24, 0, null), YieldScatter = 0, YieldFreedom = 1 };
+        var fault = Assert.Throws<DataFaultException>(() => new ComparisonCase(outcome, (s, t) => PredictionFold.Fold(late, s, made.Axis, Grid, t), Setup, Fit, new ComparisonSettings()));
+        Assert.Contains("no counts inside the fit window", fault.Fault.Found, StringComparison.Ordinal);
+    }
+
+    [Fact]
     public void Decide_NothingAsked_IsUndecidedWithAReason() =>
         Assert.Equal("no prediction", Judge.Decide([], 0.01, "no prediction").Reasons.Single());
 

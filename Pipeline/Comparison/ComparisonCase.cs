@@ -25,6 +25,9 @@ public sealed class ComparisonCase
         var window = new FitWindow(signal, fit.FromSeconds, fit.ToSeconds);
         Folded = fold(setup, 1);
         double[] counts = InWindow(window, Folded.Signal);
+        if (!(counts.Sum() > 0))
+            throw new DataFaultException($"prediction for condition \"{Condition}\"", "no counts inside the fit window", "a prediction that arrives in the window",
+                "check the times and the plane of the prediction, and fit_from and fit_to in night.toml");
         int[] edges = Merge(counts);
         double[] Merged(double[] bins) => [.. edges.Skip(1).Select((to, g) => bins.AsSpan(edges[g], to - edges[g]).ToArray().Sum())];
         Total = Merged(window.Total);

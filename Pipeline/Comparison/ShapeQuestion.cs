@@ -17,6 +17,7 @@ sealed class ShapeQuestion : IQuestion
 
     public Answer Ask(ComparisonCase both)
     {
+        if (both.Bins < 2) return TooFewBins(both);
         Vector<double> net = Vector<double>.Build.DenseOfArray([.. both.Total.Zip(both.Background, (t, b) => t - b)]);
         Vector<double> predicted = Vector<double>.Build.DenseOfArray(both.Predicted);
         double start = Math.Max(net.Sum() / predicted.Sum(), 0.01);
@@ -37,6 +38,12 @@ sealed class ShapeQuestion : IQuestion
                 $"the chance to see arrivals {100 * both.Settings.TimeMatters:G3} % late is {100 * power:F0} %, {100 * Power:F0} % are asked for"),
         };
     }
+
+    Answer TooFewBins(ComparisonCase both) => new()
+    {
+        Condition = both.Condition, Question = Name, Measured = double.NaN, Predicted = double.NaN, Statistical = double.NaN, Systematic = 0, Simulation = 0,
+        PValue = 1, WouldHaveShown = false, Finding = "all predicted counts fall into one bin, which has no shape", WhatWouldDecide = "finer bins would be needed",
+    };
 
     static Matrix<double> Covariance(ComparisonCase both, double rate) => Covariances.Of(
         [.. both.DataVariance(rate).Zip(both.PredictedVariance, (d, s) => d + rate * rate * s)],
