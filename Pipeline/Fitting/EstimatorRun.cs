@@ -40,7 +40,7 @@ sealed class EstimatorRun
     public VelocitySpectrum ToSpectrum(NetSignal signal, string? weak)
     {
         Quantity Moment(Func<SpectrumMoments, double> of) => weak is not null
-            ? Fitting.Quantity.NotDetermined(weak) : Undefined(of(_fit.Moments)) ?? Quantity(r => of(r.Moments));
+            ? Fitting.Quantity.NotDetermined(weak) : Quantity(r => of(r.Moments));
         return new VelocitySpectrum
         {
             Estimator = _estimator.Name,
@@ -59,10 +59,6 @@ sealed class EstimatorRun
             Spread = Moment(m => m.Spread),
         };
     }
-
-    /// <summary>Noise can outweigh a weak signal far from its middle: then there is no width.</summary>
-    static Quantity? Undefined(double value) =>
-        double.IsFinite(value) ? null : Fitting.Quantity.NotDetermined("noise far from the beam outweighs its width");
 
     double[] Refolded(NetSignal signal)
     {

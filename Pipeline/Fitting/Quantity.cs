@@ -29,10 +29,15 @@ public sealed record Quantity
     /// <summary>Statistical and systematic in quadrature.</summary>
     public double Total => double.Hypot(Statistical, Systematic);
 
-    public static Quantity Of(double value, double statistical, IReadOnlyList<BudgetLine> budget) => new()
+    /// <summary>The quantity, or that it is not determined where value or error is no number: a width whose square noise makes negative, in
+    /// the data or in some of their replicas.</summary>
+    public static Quantity Of(double value, double statistical, IReadOnlyList<BudgetLine> budget)
     {
-        Value = value, Statistical = statistical, Budget = budget, Systematic = Math.Sqrt(budget.Sum(b => b.Shift * b.Shift)),
-    };
+        double systematic = Math.Sqrt(budget.Sum(b => b.Shift * b.Shift));
+        return double.IsFinite(value) && double.IsFinite(statistical) && double.IsFinite(systematic)
+            ? new Quantity { Value = value, Statistical = statistical, Budget = budget, Systematic = systematic }
+            : NotDetermined("noise far from the beam outweighs it, in the data or in data that could as well have been recorded");
+    }
 
     public static Quantity NotDetermined(string because) =>
         new() { Value = double.NaN, Statistical = double.NaN, Systematic = double.NaN, NotDeterminedBecause = because };
