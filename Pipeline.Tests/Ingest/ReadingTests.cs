@@ -1,10 +1,7 @@
-using System.Diagnostics;
 using Pipeline.Apparatus;
-using Pipeline.Hdf5;
 using Pipeline.Ingest;
 using Pipeline.Predictions;
 using Pipeline.Tests.LabFiles;
-using Pipeline.Tests.Support;
 using SampleDay;
 
 namespace Pipeline.Tests.Ingest;
@@ -84,65 +81,5 @@ public sealed class ReadingTests : IDisposable
             Assert.Equal(hdf.Vz[k], csv.Vz[k], 1e-7 * hdf.Vz[k]);
             Assert.Equal(hdf.Weight[k], csv.Weight[k], 1e-7 * hdf.Weight[k]);
         }
-    }
-
-    [SkippableTheory]
-    [InlineData("int16", "")]
-    [InlineData("uint8", "")]
-    [InlineData("uint16", ", chunks=(3, 50), compression=\"gzip\", shuffle=True")]
-    [InlineData("int32", ", chunks=(4, 50), compression=\"gzip\", fletcher32=True")]
-    [InlineData("int64", ", maxshape=(None, 50), chunks=(2, 50)")]
-    [InlineData("float32", ", chunks=(3, 50), compression=\"gzip\"")]
-    [InlineData("float64", "")]
-    public void ReadRows_WrittenByAnotherLibrary_GivesItsSums(string type, string options)
-    {
-        const string Python = "/usr/bin/python3";
-        Skip.IfNot(File.Exists(Python) && Exit(Python, "import h5py") == 0, "no Python with h5py on this machine");
-        string path = Path.Combine(_folder, "other.h5");
-        string script = $"import h5py, numpy as np\nf = h5py.File(r'{path}', 'w')\na = (np.arange(10*50).reshape(10, 50) * 7 % 120).astype('{type}')\nf.create_dataset('a', data=a{options})\n"
-            + "f['fixed'] = np.array([b'on', b'off', b'on'])\nf.create_dataset('variable', data=['on', 'off', 'on'], dtype=h5py.string_dtype())\nf['a'].attrs['dt'] = 1e-5\nf.close()";
-        Assert.Equal(0, Exit(Python, script));
-        using IHdf5File file = Hdf5Files.Open(path);
-        DatasetShape shape = file.Shape("a");
-        Assert.Equal([10, 50], shape.Dimensions);
-        double[] rows = shape.Elements == ElementKind.Integer ? [.. file.ReadIntegers("a", 2, 5).Select(v => (double)v)] : file.ReadReals("a", 2, 5);
-        Assert.Equal(Enumerable.Range(100, 250).Select(k => (double)(k * 7 % 120)), rows);
-        Assert.Equal(["on", "off", "on"], file.ReadLabels("fixed"));
-        Assert.Equal(["on", "off", "on"], file.ReadLabels("variable"));
-        Assert.Equal(1e-5, file.ReadNumberAttribute("a", "dt"));
-    }
-
-    [SkippableTheory]
-    [InlineData(">i2")]
-    [InlineData(">f4")]
-    public void ReadRows_BigEndian_IsRefusedRatherThanMisread(string type)
-    {
-        const string Python = "/usr/bin/python3";
-        Skip.IfNot(File.Exists(Python) && Exit(Python, "import h5py") == 0, "no Python with h5py on this machine");
-        string path = Path.Combine(_folder, "big.h5");
-        Assert.Equal(0, Exit(Python, $"import h5py, numpy as np\nf = h5py.File(r'{path}', 'w')\nf['a'] = np.arange(20).reshape(2, 10).astype('{type}')\nf.close()"));
-        using IHdf5File file = Hdf5Files.Open(path);
-        Assert.Throws<DataFaultException>(() => file.Shape("a").Elements == ElementKind.Integer ? file.ReadIntegers("a", 0, 2).Length : file.ReadReals("a", 0, 2).Length);
-    }
-
-    [SkippableTheory]
-    [InlineData("earliest", 3)]
-    [InlineData("latest", 3)]
-    [InlineData("latest", 40)]
-    public void Open_SoftLinkLoop_IsRefusedAndDoesNotEndTheProgram(string version, int links)
-    {
-        const string Python = "/usr/bin/python3";
-        Skip.IfNot(File.Exists(Python) && Exit(Python, "import h5py") == 0, "no Python with h5py on this machine");
-        string path = Path.Combine(_folder, "loop.h5");
-        Assert.Equal(0, Exit(Python, $"import h5py\nf = h5py.File(r'{path}', 'w', libver='{version}')\nfor k in range({links}): f['g%d' % k] = [1, 2]\n"
-            + "f['fluorescence'] = h5py.SoftLink('/b')\nf['b'] = h5py.SoftLink('/fluorescence')\nf.close()"));
-        Assert.Contains("soft links", Assert.Throws<DataFaultException>(() => Hdf5Files.Open(path)).Fault.Found, StringComparison.Ordinal);
-    }
-
-    static int Exit(string program, string script)
-    {
-        using Process process = Process.Start(new ProcessStartInfo(program, ["-c", script]) { RedirectStandardError = true, UseShellExecute = false })!;
-        process.WaitForExit();
-        return process.ExitCode;
     }
 }

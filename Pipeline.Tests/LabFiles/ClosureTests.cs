@@ -82,6 +82,7 @@ public class ClosureTests
         Assert.Equal([50L], run.Cuts.Single(c => c.Reason == "missing trigger").Numbers);
         Assert.Equal([33L], run.Cuts.Single(c => c.Reason == "probe unlocked").Numbers);
         Assert.Equal([14L], run.Cuts.Single(c => c.Reason == "saturated").Numbers);
+        Assert.Contains(run.Remarks, r => r.StartsWith("photon-transfer line: gain", StringComparison.Ordinal) && !r.Contains("WARNING", StringComparison.Ordinal));
         SpectrumOutcome fit = RunAnalysis.Fit(run, "arrival", lab.Setup(), settings).Single();
         JsonElement truth = lab.Truth.GetProperty("off");
         AssertWithin(fit.Number, truth.GetProperty("number_per_shot_expected").GetDouble());

@@ -60,6 +60,7 @@ sealed class LabFile
                 Kind = Analog ? DetectorKind.Analog : DetectorKind.Counting, Efficiency = Relative("detection_efficiency", "detection_efficiency_rel"),
                 DeadTime = Analog ? default : new(detector.GetProperty("dead_time_s").GetDouble()),
                 VoltSecondPerElectron = Analog ? new(detector.GetProperty("volt_second_per_photon").GetDouble()) : null,
+                ExcessNoise = Analog ? new(detector.GetProperty("excess_noise").GetDouble()) : new(1),
                 TimeConstant = Analog ? new(detector.GetProperty("rc_s").GetDouble()) : default, ProbeMonitorZero = new(0.02), AblationMonitorZero = new(0.05),
                 ProbeMonitorNoise = 0.005, AblationMonitorNoise = 0.08,
             },

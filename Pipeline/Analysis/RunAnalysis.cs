@@ -17,7 +17,7 @@ public sealed record ConditionPrediction(MoleculeList Molecules, bool RelativeOn
 public static class RunAnalysis
 {
     /// <summary>Numerical behaviour of the program: raised whenever the same input may give other numbers.</summary>
-    public const int NumericalVersion = 1;
+    public const int NumericalVersion = 2;
 
     /// <summary>Spectra and numbers of every condition.</summary>
     public static IReadOnlyList<SpectrumOutcome> Fit(BinnedRun run, string mode, Setup setup, AnalysisSettings settings)

@@ -34,6 +34,10 @@ public sealed record Detector
     public Measured? VoltSecondPerElectron { get; init => field = value is { } g ? Guard.Positive(g) : null; }
     /// <summary>1/e time of the detector's bandwidth (one pole), s; 0 where it does not matter.</summary>
     public Measured TimeConstant { get; init => field = Guard.NotNegative(value); }
+    /// <summary>1/e time of the coupling capacitor (one high-pass pole), s; 0 where the detector is coupled directly.</summary>
+    public Measured CouplingTime { get; init => field = Guard.NotNegative(value); }
+    /// <summary>Mean square over squared mean of the charge of one photo-electron; 1 where all are alike.</summary>
+    public Measured ExcessNoise { get; init => field = Guard.Positive(value); } = new(1);
     /// <summary>Reading of the probe monitor without light, V.</summary>
     public Measured ProbeMonitorZero { get; init; }
     /// <summary>Reading of the ablation monitor without a pulse, V.</summary>

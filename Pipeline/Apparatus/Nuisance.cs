@@ -30,6 +30,10 @@ public static class Nuisances
         new("emission tail", s => EmissionTail(s.Emission), (s, m) => s with { Emission = WithTail(s.Emission, m) }),
         new("efficiency", s => s.Detector.Efficiency, (s, m) => s with { Detector = s.Detector with { Efficiency = m } }),
         new("detector time constant", s => s.Detector.TimeConstant, (s, m) => s with { Detector = s.Detector with { TimeConstant = m } }),
+        new("coupling time", s => s.Detector.CouplingTime, (s, m) => s with { Detector = s.Detector with { CouplingTime = m } }),
+        // a response in photo-electrons cannot tell gain from efficiency
+        new("gain", s => s.Detector.VoltSecondPerElectron is { } g ? new Measured(1, g.Sigma / g.Value) : null,
+            (s, m) => s with { Detector = s.Detector with { Efficiency = new(s.Detector.Efficiency.Value * m.Value, s.Detector.Efficiency.Sigma) } }),
         new("probe width", s => s.Probe.Width, (s, m) => s with { Probe = s.Probe with { Width = m } }),
         new("probe angle", s => s.Probe.Angle, (s, m) => s with { Probe = s.Probe with { Angle = m } }),
         new("probe detuning", s => s.Probe.Detuning, (s, m) => s with { Probe = s.Probe with { Detuning = m } }),

@@ -14,6 +14,8 @@ sealed record ShotMeans
     public required double[] Live { get; init; }
     /// <summary>[bins] variance of <see cref="Total"/>, from Poisson counts or from the scatter of blocks.</summary>
     public required double[] Variance { get; init; }
+    /// <summary>Standard error of the mean baseline of a shot, in photo-electrons a tick; 0 for counts.</summary>
+    public required double Baseline { get; init; }
     /// <summary>Mean reading above zero, V; NaN without monitor.</summary>
     public required double ProbeMonitor { get; init; }
     public required double AblationMonitor { get; init; }
@@ -36,6 +38,7 @@ sealed record ShotMeans
             Total = total,
             Live = counting ? DeadTime.Live(group, run.Axis, detector.DeadTime.Value, detector.DeadTimeKind) : [.. total.Select(_ => 1.0)],
             Variance = counting ? PoissonVariance(total, run.Axis) : BlockScatter(group, unit),
+            Baseline = counting ? 0 : unit * Math.Sqrt(group.BaselineVariance) / group.Shots,
             ProbeMonitor = group.BlockProbeMonitor.Sum() / group.Shots,
             AblationMonitor = group.BlockAblationMonitor.Sum() / group.Shots,
         };

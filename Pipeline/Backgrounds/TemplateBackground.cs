@@ -5,7 +5,8 @@ namespace Pipeline.Backgrounds;
 
 /// <summary>Bin by bin from the other kinds of shot, with no assumption on how the background runs in time.</summary>
 /// <remarks>B = kappa_p (y10 - y00) + kappa_a (y01 - y00) + y00 a shot; 10 probe on without ablation, 01 ablation with the probe blocked,
-/// 00 neither. kappa_p and kappa_a are the ratios of the mean monitor readings, and each is a common cause.</remarks>
+/// 00 neither. kappa_p and kappa_a are the ratios of the mean monitor readings, and each is a common cause; so is, for an analog detector, the error of the
+/// baselines, which is the same in every tick.</remarks>
 sealed class TemplateBackground : IBackgroundModel
 {
     public string Name => "templates";
@@ -41,12 +42,15 @@ sealed class TemplateBackground : IBackgroundModel
             byProbe[i] = scale * (scatter.PerShot(i) - y00) * probe.Sigma;
             byAblation[i] = flash is null ? 0 : scale * (y01 - y00) * ablation.Sigma;
         }
+        double[] baselines = [signal.Baseline, probe.Value * scatter.Baseline, ablation.Value * (flash?.Baseline ?? 0), darkFactor * (dark?.Baseline ?? 0)];
+        double baseline = Math.Sqrt(baselines.Sum(Square));
         return new NetSignal
         {
             Axis = run.Axis, Condition = condition, DetectorKind = run.DetectorKind, Shots = signal.Shots, Total = signal.Total,
             Live = signal.Live, Background = background, BackgroundVariance = variance,
             TotalVariance = run.DetectorKind == DetectorKind.Analog ? signal.Variance : null,
-            Causes = [new("scatter scale", byProbe), new("flash scale", byAblation)],
+            Causes = [new("scatter scale", byProbe), new("flash scale", byAblation),
+                new("baseline", [.. Enumerable.Range(0, bins).Select(i => baseline * signal.Shots * (run.Axis.Edges[i + 1] - run.Axis.Edges[i]))])],
             Remarks = [.. remarks, .. DeadTime.Remarks(condition, run.Axis, signal.Live)],
         };
     }

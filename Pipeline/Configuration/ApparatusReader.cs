@@ -8,23 +8,26 @@ static class ApparatusReader
 {
     /// <param name="root">The file.</param>
     /// <param name="species">Reads species/NAME.toml.</param>
-    public static Setup Read(TomlTable root, Func<TomlTable, string, Species> species)
+    /// <returns>The setup with its usual detector, and other detectors by name.</returns>
+    public static (Setup Setup, IReadOnlyDictionary<string, Detector> Detectors) Read(TomlTable root, Func<TomlTable, string, Species> species)
     {
         Species molecule = species(root, root.Text("species"));
         Decelerator? decelerator = root.OptionalTable("decelerator") is { } section ? ReadDecelerator(section) : null;
         Beamline beamline = ReadBeamline(root.Table("beamline"), decelerator);
         Probe probe = ReadProbe(root.Table("probe"), molecule);
         Detector detector = ReadDetector(root.Table("detector"));
+        var others = new Dictionary<string, Detector>(StringComparer.Ordinal);
+        if (root.OptionalTable("detectors") is { } named) foreach (string name in named.Keys.ToArray()) others[name] = ReadDetector(named.Table(name));
         EmissionProfile emission = ReadEmission(root.Table("emission"));
         var conditions = ReadConditions(root.Table("conditions"), decelerator);
         TomlTable trap = root.Table("trap");
         double capture = trap.Quantity("capture_velocity", Dimension.Speed).Value;
         trap.RefuseUnknown();
         root.RefuseUnknown();
-        return trap.Build(() => new Setup
+        return (trap.Build(() => new Setup
         {
             Species = molecule, Beamline = beamline, Probe = probe, Detector = detector, Emission = emission, Conditions = conditions, CaptureSpeed = capture,
-        }, new Dictionary<string, string>(StringComparer.Ordinal) { ["CaptureSpeed"] = "capture_velocity" });
+        }, new Dictionary<string, string>(StringComparer.Ordinal) { ["CaptureSpeed"] = "capture_velocity" }), others);
     }
 
     static Beamline ReadBeamline(TomlTable t, Decelerator? decelerator)
@@ -93,12 +96,15 @@ static class ApparatusReader
             ? t.Choice("dead_time_kind", ("non-paralysable", DeadTimeKind.NonParalysable), ("paralysable", DeadTimeKind.Paralysable)) : DeadTimeKind.NonParalysable;
         Measured? gain = kind == DetectorKind.Analog ? t.Quantity("volt_second_per_electron", Dimension.VoltSecond) : null;
         Measured filter = kind == DetectorKind.Analog ? t.Quantity("time_constant", Dimension.Time) : t.OptionalQuantity("time_constant", Dimension.Time) ?? default;
+        Measured coupling = kind == DetectorKind.Analog ? t.OptionalQuantity("coupling_time", Dimension.Time) ?? default : default;
+        Measured excess = kind == DetectorKind.Analog ? t.OptionalQuantity("excess_noise", Dimension.Fraction) ?? new Measured(1) : new Measured(1);
+        if (excess.Value < 1) throw t.Refuse("excess_noise", $"{excess.Value:G4}", "1 or more: the mean square over the squared mean of the charge of one photo-electron");
         var (probeZero, ablationZero) = (t.OptionalQuantity("probe_monitor_zero", Dimension.Voltage) ?? default, t.OptionalQuantity("ablation_monitor_zero", Dimension.Voltage) ?? default);
         var (probeNoise, ablationNoise) = (t.OptionalQuantity("probe_monitor_noise", Dimension.Fraction) ?? default, t.OptionalQuantity("ablation_monitor_noise", Dimension.Fraction) ?? default);
         t.RefuseUnknown();
         return t.Build(() => new Detector
         {
-            Kind = kind, Efficiency = efficiency, DeadTime = deadTime, DeadTimeKind = paralysable, VoltSecondPerElectron = gain, TimeConstant = filter, ProbeMonitorZero = probeZero,
+            Kind = kind, Efficiency = efficiency, DeadTime = deadTime, DeadTimeKind = paralysable, VoltSecondPerElectron = gain, TimeConstant = filter, CouplingTime = coupling, ExcessNoise = excess, ProbeMonitorZero = probeZero,
             AblationMonitorZero = ablationZero, ProbeMonitorNoise = probeNoise.Value, AblationMonitorNoise = ablationNoise.Value,
         });
     }

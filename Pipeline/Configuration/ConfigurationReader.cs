@@ -37,15 +37,16 @@ public static class ConfigurationReader
         }
         var files = new SortedSet<string>(StringComparer.Ordinal) { Apparatus, Night };
         var (shots, molecules, broken) = ReadLayouts(folder, files, faults);
-        var setup = Try(faults, () => ApparatusReader.Read(TomlFile.Read(folder, Apparatus), (root, name) => SpeciesOf(folder, root, name, files)));
+        var apparatus = Try(faults, () => Tuple.Create(ApparatusReader.Read(TomlFile.Read(folder, Apparatus), (root, name) => SpeciesOf(folder, root, name, files))));
+        Apparatus.Setup? setup = apparatus?.Item1.Setup;
         var choices = new NightChoices([.. BackgroundModels.All.Select(b => b.Name)], SpectrumEstimatorNames.All, [.. ResponseModes.All.Select(m => m.Name)],
-            [.. shots.Keys, .. broken], [.. molecules.Keys, .. broken], setup?.Conditions.Keys.ToArray() ?? []);
+            [.. shots.Keys, .. broken], [.. molecules.Keys, .. broken], setup?.Conditions.Keys.ToArray() ?? [], apparatus?.Item1.Detectors.Keys.ToArray() ?? []);
         if (setup is null) return null;
         var night = Try(faults, () => Tuple.Create(NightReader.Read(TomlFile.Read(folder, Night), choices)));
         if (night is null || faults.Count > 0) return null;
         return new LabConfiguration
         {
-            Setup = setup, Analysis = night.Item1.Settings, Runs = night.Item1.Runs, Predictions = night.Item1.Predictions, ShotLayouts = shots,
+            Setup = setup, Detectors = apparatus!.Item1.Detectors, Analysis = night.Item1.Settings, Runs = night.Item1.Runs, Predictions = night.Item1.Predictions, ShotLayouts = shots,
             MoleculeLayouts = molecules, Files = [.. files], Digest = DigestOf(folder, files),
         };
     }

@@ -9,7 +9,14 @@ namespace Pipeline.Configuration;
 /// <param name="Match">File name pattern with * and ?, no folder parts.</param>
 /// <param name="Mode">Mode of measurement, "arrival".</param>
 /// <param name="Layout">Name of a shot file layout.</param>
-public sealed record RunRule(string Match, string Mode, string Layout);
+public sealed record RunRule(string Match, string Mode, string Layout)
+{
+    /// <summary>Name of the run, {file} stands for the file's name without extension; null: that name. Rules with a name make runs of their
+    /// own, so that one file can give several: one a detector.</summary>
+    public string? Name { get; init; }
+    /// <summary>Name of a detector beside the usual one; null: the usual one.</summary>
+    public string? Detector { get; init; }
+}
 
 /// <summary>Whether a prediction states how many molecules arrive, or only their distribution.</summary>
 public enum Normalisation
@@ -32,8 +39,10 @@ public sealed record PredictionRule(
 public sealed record LabConfiguration
 {
     public required Setup Setup { get; init; }
+    /// <summary>Detectors beside the usual one, by name.</summary>
+    public IReadOnlyDictionary<string, Detector> Detectors { get; init; } = new Dictionary<string, Detector>(StringComparer.Ordinal);
     public required AnalysisSettings Analysis { get; init; }
-    /// <summary>First match wins.</summary>
+    /// <summary>First match wins among the rules without a name.</summary>
     public required IReadOnlyList<RunRule> Runs { get; init; }
     public required IReadOnlyList<PredictionRule> Predictions { get; init; }
     public required IReadOnlyDictionary<string, ShotFileLayout> ShotLayouts { get; init; }
@@ -42,4 +51,7 @@ public sealed record LabConfiguration
     public required string Digest { get; init; }
     /// <summary>The files that were read, relative to the folder, in ordinal order.</summary>
     public required IReadOnlyList<string> Files { get; init; }
+
+    /// <summary>The apparatus as the runs of a rule see it.</summary>
+    public Setup SetupFor(RunRule rule) => rule.Detector is { } name ? Setup with { Detector = Detectors[name] } : Setup;
 }

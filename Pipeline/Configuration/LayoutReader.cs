@@ -33,26 +33,28 @@ static class LayoutReader
         var layout = new Hdf5MatrixLayout
         {
             Name = name, Samples = samples.Text("dataset"), Meaning = MeaningOf(samples), Start = TimeOf(samples, "start"), Step = TimeOf(samples, "step"),
-            Scale = FactorOf(samples, "scale", 1), Offset = FactorOf(samples, "offset", 0), LowestCode = CodeOf(samples, "lowest_code"),
-            HighestCode = CodeOf(samples, "highest_code"), Shots = Columns(root.Table("shots"), root.Table("kinds")),
+            Scale = FactorOf(samples, "scale", 1), Offset = FactorOf(samples, "offset", 0), ExternalLinks = ExternalLinks(root), LowestCode = CodeOf(samples, "lowest_code"),
+            HighestCode = CodeOf(samples, "highest_code"), Channel = samples.Has("channel") ? samples.Whole("channel", 0, 1000) : null,
+            Written = samples.Has("written") ? FactorOf(samples, "written", 0) : null, Shots = ShotColumnsReader.Read(root),
         };
         samples.RefuseUnknown();
         return layout;
     }
 
+    internal static bool ExternalLinks(TomlTable root) => root.Has("external_links") && root.Flag("external_links");
+
     static WideCsvLayout Wide(TomlTable root, string name)
     {
         TomlTable samples = root.Table("samples"), shots = root.Table("shots"), time = samples.Table("time");
-        string shotTable = shots.Text("file");
+        string shotTable = ShotColumnsReader.TableName(shots);
         var layout = new WideCsvLayout
         {
             Name = name, Dialect = Dialect(root), Meaning = MeaningOf(samples), TimeColumn = time.Text("column"),
             TimeFactor = UnitOf(time, Dimension.Time), ShotColumn = samples.Text("shot"), ShotTable = shotTable,
             Scale = samples.Has("scale") ? samples.Number("scale") : 1, Offset = samples.Has("offset") ? samples.Number("offset") : 0,
-            LowestCode = CodeOf(samples, "lowest_code"), HighestCode = CodeOf(samples, "highest_code"), Shots = Columns(shots, root.Table("kinds")),
+            LowestCode = CodeOf(samples, "lowest_code"), HighestCode = CodeOf(samples, "highest_code"), Shots = ShotColumnsReader.Read(root),
         };
         if (!layout.ShotColumn.Contains("{number}", StringComparison.Ordinal)) throw samples.Refuse("shot", $"\"{layout.ShotColumn}\"", "a column name with {number} in it");
-        RefuseOutside(shots, layout.ShotTable);
         time.RefuseUnknown();
         samples.RefuseUnknown();
         return layout;
@@ -68,30 +70,6 @@ static class LayoutReader
         };
         c.RefuseUnknown();
         return layout;
-    }
-
-    internal static void RefuseOutside(TomlTable shots, string file)
-    {
-        if (file.Contains("..", StringComparison.Ordinal) || Path.IsPathRooted(file)) throw shots.Refuse("file", $"\"{file}\"", "a file beside the run");
-    }
-
-    internal static ShotColumns Columns(TomlTable shots, TomlTable kinds)
-    {
-        TomlTable? detuning = shots.OptionalTable("detuning");
-        string? condition = shots.OptionalText("condition"), only = shots.OptionalText("only_condition");
-        if (condition is null == only is null)
-            throw shots.Refuse("condition", condition is null ? "neither condition nor only_condition" : "both condition and only_condition", "one of them");
-        var columns = new ShotColumns
-        {
-            Number = shots.OptionalText("number"), Kind = shots.Text("kind"), Condition = condition, OnlyCondition = only,
-            ProbeMonitor = shots.OptionalText("probe_monitor"), AblationMonitor = shots.OptionalText("ablation_monitor"), Detuning = detuning?.Text("column"),
-            DetuningFactor = detuning is null ? 1 : UnitOf(detuning, Dimension.Frequency),
-            KindLabels = [kinds.Text("signal"), kinds.Text("no_ablation"), kinds.Text("probe_blocked"), kinds.Text("dark")],
-        };
-        detuning?.RefuseUnknown();
-        shots.RefuseUnknown();
-        kinds.RefuseUnknown();
-        return columns;
     }
 
     /// <summary>[table]: separator, comment, decimal, encoding, skip_lines.</summary>

@@ -12,10 +12,9 @@ static class MoreLayouts
         var layout = new LongCsvLayout
         {
             Name = name, Dialect = LayoutReader.Dialect(root), Meaning = LayoutReader.MeaningOf(samples), Axis = Axis(samples), ShotColumn = samples.Text("shot"),
-            TimeColumn = time.Text("column"), TimeFactor = LayoutReader.UnitOf(time, Dimension.Time), ValueColumn = samples.Text("value"), ShotTable = shots.Text("file"),
-            Shots = LayoutReader.Columns(shots, root.Table("kinds")),
+            TimeColumn = time.Text("column"), TimeFactor = LayoutReader.UnitOf(time, Dimension.Time), ValueColumn = samples.Text("value"), ShotTable = ShotColumnsReader.TableName(shots),
+            Shots = ShotColumnsReader.Read(root),
         };
-        LayoutReader.RefuseOutside(shots, layout.ShotTable);
         time.RefuseUnknown();
         samples.RefuseUnknown();
         return layout;
@@ -27,10 +26,9 @@ static class MoreLayouts
         var layout = new CsvFolderLayout
         {
             Name = name, Dialect = LayoutReader.Dialect(root), Meaning = LayoutReader.MeaningOf(samples), TimeColumn = time.Text("column"),
-            TimeFactor = LayoutReader.UnitOf(time, Dimension.Time), ValueColumn = samples.Text("value"), ShotTable = shots.Text("file"), FileColumn = shots.Text("trace"),
-            LowestCode = LayoutReader.CodeOf(samples, "lowest_code"), HighestCode = LayoutReader.CodeOf(samples, "highest_code"), Shots = LayoutReader.Columns(shots, root.Table("kinds")),
+            TimeFactor = LayoutReader.UnitOf(time, Dimension.Time), ValueColumn = samples.Text("value"), ShotTable = ShotColumnsReader.TableName(shots), FileColumn = shots.Text("trace"),
+            LowestCode = LayoutReader.CodeOf(samples, "lowest_code"), HighestCode = LayoutReader.CodeOf(samples, "highest_code"), Shots = ShotColumnsReader.Read(root),
         };
-        LayoutReader.RefuseOutside(shots, layout.ShotTable);
         time.RefuseUnknown();
         samples.RefuseUnknown();
         return layout;
@@ -41,8 +39,8 @@ static class MoreLayouts
         TomlTable samples = root.Table("samples"), times = samples.Table("times");
         var layout = new Hdf5StampsLayout
         {
-            Name = name, Meaning = SampleMeaning.BinStart, Axis = Axis(samples), Times = times.Text("dataset"), TimeFactor = LayoutReader.UnitOf(times, Dimension.Time),
-            ShotIndex = samples.Text("shot_index"), Shots = LayoutReader.Columns(root.Table("shots"), root.Table("kinds")),
+            Name = name, ExternalLinks = LayoutReader.ExternalLinks(root), Meaning = SampleMeaning.BinStart, Axis = Axis(samples), Times = times.Text("dataset"), TimeFactor = LayoutReader.UnitOf(times, Dimension.Time),
+            ShotIndex = samples.Text("shot_index"), Shots = ShotColumnsReader.Read(root),
         };
         times.RefuseUnknown();
         samples.RefuseUnknown();
@@ -54,9 +52,9 @@ static class MoreLayouts
         TomlTable samples = root.Table("samples");
         var layout = new Hdf5GroupsLayout
         {
-            Name = name, Meaning = LayoutReader.MeaningOf(samples), Axis = Axis(samples), Groups = samples.Text("groups"), Samples = samples.Text("dataset"),
+            Name = name, ExternalLinks = LayoutReader.ExternalLinks(root), Meaning = LayoutReader.MeaningOf(samples), Axis = Axis(samples), Groups = samples.Text("groups"), Samples = samples.Text("dataset"),
             LowestCode = LayoutReader.CodeOf(samples, "lowest_code"), HighestCode = LayoutReader.CodeOf(samples, "highest_code"),
-            Shots = LayoutReader.Columns(root.Table("shots"), root.Table("kinds")),
+            Shots = ShotColumnsReader.Read(root),
         };
         samples.RefuseUnknown();
         return layout;
@@ -67,8 +65,8 @@ static class MoreLayouts
         TomlTable samples = root.Table("samples"), times = samples.Table("times");
         var layout = new Hdf5ClassesLayout
         {
-            Name = name, Meaning = LayoutReader.MeaningOf(samples), Groups = samples.Text("groups"), Samples = samples.Text("dataset"), Times = times.Text("dataset"),
-            TimeFactor = LayoutReader.UnitOf(times, Dimension.Time), Shots = LayoutReader.Columns(root.Table("shots"), root.Table("kinds")),
+            Name = name, ExternalLinks = LayoutReader.ExternalLinks(root), Meaning = LayoutReader.MeaningOf(samples), Groups = samples.Text("groups"), Samples = samples.Text("dataset"), Times = times.Text("dataset"),
+            TimeFactor = LayoutReader.UnitOf(times, Dimension.Time), Shots = ShotColumnsReader.Read(root),
         };
         if (!layout.Groups.Contains("{kind}", StringComparison.Ordinal)) throw samples.Refuse("groups", $"\"{layout.Groups}\"", "a group name with {kind} in it");
         times.RefuseUnknown();

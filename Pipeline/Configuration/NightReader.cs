@@ -14,9 +14,11 @@ namespace Pipeline.Configuration;
 /// <param name="ShotLayouts">Layouts of shot files.</param>
 /// <param name="MoleculeLayouts">Layouts of predictions.</param>
 /// <param name="Conditions">Conditions of the apparatus.</param>
+/// <param name="Detectors">Detectors beside the usual one.</param>
 sealed record NightChoices(
     IReadOnlyCollection<string> Backgrounds, IReadOnlyCollection<string> Estimators, IReadOnlyCollection<string> Modes,
-    IReadOnlyCollection<string> ShotLayouts, IReadOnlyCollection<string> MoleculeLayouts, IReadOnlyCollection<string> Conditions);
+    IReadOnlyCollection<string> ShotLayouts, IReadOnlyCollection<string> MoleculeLayouts, IReadOnlyCollection<string> Conditions,
+    IReadOnlyCollection<string> Detectors);
 
 /// <summary>night.toml.</summary>
 static class NightReader
@@ -113,8 +115,12 @@ static class NightReader
 
     static RunRule ReadRun(TomlTable t, NightChoices choices)
     {
-        var rule = new RunRule(t.Text("match"), t.Choice("mode", choices.Modes), t.Choice("layout", choices.ShotLayouts));
+        var rule = new RunRule(t.Text("match"), t.Choice("mode", choices.Modes), t.Choice("layout", choices.ShotLayouts))
+        {
+            Name = t.OptionalText("name"), Detector = t.Has("detector") ? t.Choice("detector", choices.Detectors) : null,
+        };
         t.RefuseUnknown();
+        if (rule.Name is { } name && (!name.Contains("{file}", StringComparison.Ordinal) || name.IndexOfAny(['/', '\\']) >= 0)) throw t.Refuse("name", $"\"{name}\"", "a name with {file} in it and without folders, such as \"{file}-side\"");
         return rule.Match.Contains('/', StringComparison.Ordinal) || rule.Match.Length == 0
             ? throw t.Refuse("match", $"\"{rule.Match}\"", "a file name pattern without folders, such as \"*.h5\"") : rule;
     }

@@ -19,8 +19,10 @@ sealed class Design
         _first = new int[Variables];
         for (int c = 0; c < Cells; c++) (_first[c], _columns[c]) = Slice(window, response, c);
         for (int k = 0; k < window.Causes.Length; k++) _columns[Cells + k] = window.Causes[k];
-        double typical = _columns.Take(Cells).Select(c => c.Sum()).Order().ElementAt(Cells / 2);
-        Blind = [.. _columns.Take(Cells).Select(c => c.Sum() <= BlindShare * typical)];
+        // a coupling capacitor makes columns whose sum is nothing
+        double[] seen = [.. _columns.Take(Cells).Select(c => c.Sum(Math.Abs))];
+        double typical = seen.Order().ElementAt(Cells / 2);
+        Blind = [.. seen.Select(s => s <= BlindShare * typical)];
     }
 
     /// <summary>Cells that leave less than this share of the typical counts in the window are not seen.</summary>

@@ -164,7 +164,7 @@ sealed class ShapeProblem
             unit[c] = 1;
             double[] column = Without(unit);
             unit[c] = 0;
-            double norm = column.Sum();
+            double norm = column.Sum(Math.Abs);
             if (norm <= 0) continue;
             double share = Math.Max(0, column.Zip(net, (a, n) => a * n).Sum() / norm);
             // an overlap counts the density of counts: squared, it follows the peak rather than the background's noise

@@ -1,20 +1,45 @@
+using Pipeline.Hdf5.Library;
+
 namespace Pipeline.Hdf5;
+
+/// <summary>Which library reads.</summary>
+public enum Hdf5Reader
+{
+    /// <summary>The C library where the machine has it, else the managed one.</summary>
+    Best,
+    Library,
+    Managed,
+}
+
+/// <summary>How a file is opened.</summary>
+/// <param name="Reader">Which library reads.</param>
+/// <param name="ExternalLinks">Whether links into other files are followed.</param>
+public sealed record Hdf5Access(Hdf5Reader Reader = Hdf5Reader.Best, bool ExternalLinks = false)
+{
+    /// <summary>The best reader, no external links. ARRIVALS_HDF5 = "managed" in the environment leaves the C library aside.</summary>
+    public static Hdf5Access Usual { get; } = new(Environment.GetEnvironmentVariable("ARRIVALS_HDF5") == "managed" ? Hdf5Reader.Managed : Hdf5Reader.Best);
+}
 
 /// <summary>Opens HDF5 files, after looking at the bytes that no library should be trusted with.</summary>
 public static class Hdf5Files
 {
     static ReadOnlySpan<byte> Signature => [0x89, (byte)'H', (byte)'D', (byte)'F', 0x0d, 0x0a, 0x1a, 0x0a];
 
+    /// <param name="path">The file.</param>
+    /// <param name="access">Which library reads, and what it may follow.</param>
     /// <exception cref="DataFaultException">Missing, unreadable, not HDF5, cut short, or still being written.</exception>
-    public static IHdf5File Open(string path)
+    public static IHdf5File Open(string path, Hdf5Access? access = null)
     {
+        access ??= Hdf5Access.Usual;
         CheckSuperblock(path);
-        using (FileStream file = File.OpenRead(path))
-            if (SoftLinkScan.Finds(file))
-                throw new DataFaultException(Path.GetFileName(path), "soft links", "a file without soft links: a loop of them cannot be told from others in time",
-                    "write the file without them, or copy it with the links resolved");
-        return new ManagedHdf5File(path);
+        LoadedLibrary? library = access.Reader == Hdf5Reader.Managed ? null : LibraryLoader.Current;
+        if (library is null && access.Reader == Hdf5Reader.Library)
+            throw new DataFaultException(Path.GetFileName(path), "no HDF5 C library of version 1.10 or later on this machine", "one", "install it (on Debian the package libhdf5-103-1), or let the managed reader read");
+        return library is not null ? new NativeHdf5File(library, path, access.ExternalLinks) : new ManagedHdf5File(path);
     }
+
+    /// <summary>Whether the machine has the HDF5 C library.</summary>
+    public static bool HasLibrary => LibraryLoader.Current is not null;
 
     static void CheckSuperblock(string path)
     {

@@ -25,15 +25,20 @@ static class Hdf5Walk
             string at = path.Length == 0 ? child.Name : $"{path}/{child.Name}";
             if (child is IH5Group below) Add(below, at, nodes, most, depth + 1);
             else if (child is IH5Dataset dataset)
-                nodes.Add(new Hdf5Node(at, [.. dataset.Space.Dimensions.Select(d => (long)d)], ManagedHdf5File.KindOf(dataset.Type), Word(dataset.Type), Attributes(dataset)));
+                nodes.Add(new Hdf5Node(at, [.. dataset.Space.Dimensions.Select(d => (long)d)], ManagedHdf5File.KindOf(dataset.Type), Word(dataset.Type), Attributes(dataset))
+                {
+                    Fields = dataset.Type.Class == H5DataTypeClass.Compound ? [.. dataset.Type.Compound.Members.Select(m => m.Name)] : [],
+                });
         }
     }
 
-    static string Word(IH5DataType type) => type.Class switch
+    internal static string Word(IH5DataType type) => type.Class switch
     {
         H5DataTypeClass.FixedPoint => $"{(type.FixedPoint.IsSigned ? "int" : "uint")}{8 * type.Size}",
         H5DataTypeClass.FloatingPoint => $"float{8 * type.Size}",
         H5DataTypeClass.String or H5DataTypeClass.VariableLength => "text",
+        H5DataTypeClass.Compound => $"table of {string.Join(", ", type.Compound.Members.Select(m => m.Name))}",
+        H5DataTypeClass.Enumerated => "an enumeration",
         _ => type.Class.ToString(),
     };
 
@@ -43,14 +48,12 @@ static class Hdf5Walk
     {
         try
         {
-            return (a.Type.Class, a.Type.Size) switch
+            if (a.Space.Rank != 0) return $"({Word(a.Type)}, {a.Space.Rank} {(a.Space.Rank == 1 ? "dimension" : "dimensions")})";
+            return a.Type.Class switch
             {
-                (H5DataTypeClass.String or H5DataTypeClass.VariableLength, _) => a.Read<string>(),
-                (H5DataTypeClass.FloatingPoint, 8) => a.Read<double>().ToString("R", CultureInfo.InvariantCulture),
-                (H5DataTypeClass.FloatingPoint, 4) => a.Read<float>().ToString("R", CultureInfo.InvariantCulture),
-                (H5DataTypeClass.FixedPoint, 8) => a.Read<long>().ToString(CultureInfo.InvariantCulture),
-                (H5DataTypeClass.FixedPoint, 4) => a.Read<int>().ToString(CultureInfo.InvariantCulture),
-                _ => Word(a.Type),
+                H5DataTypeClass.String or H5DataTypeClass.VariableLength => a.Read<string>(),
+                H5DataTypeClass.Enumerated => ManagedValues.NameOf(a.Type, ManagedValues.Whole(a.Type.Enumeration.BaseType, new(a))[0]),
+                _ => ManagedValues.Numbers(a.Type, new(a)) is { } numbers ? numbers[0].ToString("R", CultureInfo.InvariantCulture) : Word(a.Type),
             };
         }
         catch (Exception)

@@ -5,7 +5,10 @@ public enum ElementKind
 {
     Integer,
     Real,
+    /// <summary>Strings, or the names of an enumeration; booleans are one of FALSE and TRUE.</summary>
     Text,
+    /// <summary>Rows with named fields.</summary>
+    Table,
     Other,
 }
 
@@ -21,7 +24,11 @@ public sealed record DatasetShape(IReadOnlyList<long> Dimensions, ElementKind El
 /// <param name="Elements">What a dataset holds.</param>
 /// <param name="Type">As a word, "int16".</param>
 /// <param name="Attributes">Name and value as text.</param>
-public sealed record Hdf5Node(string Path, IReadOnlyList<long>? Dimensions, ElementKind Elements, string Type, IReadOnlyList<(string Name, string Text)> Attributes);
+public sealed record Hdf5Node(string Path, IReadOnlyList<long>? Dimensions, ElementKind Elements, string Type, IReadOnlyList<(string Name, string Text)> Attributes)
+{
+    /// <summary>Names of the fields of a table.</summary>
+    public IReadOnlyList<string> Fields { get; init; } = [];
+}
 
 /// <summary>An open HDF5 file, read-only. Every fault names file and path; nothing of the library behind it shows.</summary>
 public interface IHdf5File : IDisposable
@@ -44,19 +51,32 @@ public interface IHdf5File : IDisposable
     /// <summary>[rows * what one row holds] of an integer dataset of any rank; a row is one step along the first dimension.</summary>
     int[] ReadIntegers(string path, long firstRow, int rows);
 
-    /// <summary>The same of a dataset of floating-point numbers.</summary>
+    /// <summary>The same of a dataset of any numbers, as real ones.</summary>
     double[] ReadReals(string path, long firstRow, int rows);
 
-    /// <summary>[n] of a one-dimensional numeric dataset.</summary>
-    double[] ReadNumbers(string path);
+    /// <summary>[n] of a one-dimensional numeric dataset, or of a field of a table.</summary>
+    double[] ReadNumbers(string path, string? field = null);
 
-    /// <summary>[n] of a one-dimensional dataset of strings; numbers are given as invariant text.</summary>
-    string[] ReadLabels(string path);
+    /// <summary>[n] of a one-dimensional dataset of strings or an enumeration, or of a field of a table; numbers are given as invariant text.</summary>
+    string[] ReadLabels(string path, string? field = null);
 
-    /// <summary>A numeric attribute of a dataset or group.</summary>
+    /// <summary>[n] of a numeric attribute of a dataset or group; one value where it is a scalar.</summary>
     /// <exception cref="DataFaultException">No such attribute, or not a number.</exception>
-    double ReadNumberAttribute(string path, string attribute);
+    double[] ReadNumberAttributes(string path, string attribute);
 
-    /// <summary>An attribute as text; numbers are given as invariant text.</summary>
-    string ReadTextAttribute(string path, string attribute);
+    /// <summary>[n] of an attribute as text; numbers are given as invariant text.</summary>
+    string[] ReadTextAttributes(string path, string attribute);
+}
+
+/// <summary>What every reader offers by what it must.</summary>
+public static class Hdf5FileExtensions
+{
+    /// <summary>A numeric attribute with one value.</summary>
+    public static double ReadNumberAttribute(this IHdf5File file, string path, string attribute) => One(file.ReadNumberAttributes(path, attribute), path, attribute);
+
+    /// <summary>A text attribute with one value.</summary>
+    public static string ReadTextAttribute(this IHdf5File file, string path, string attribute) => One(file.ReadTextAttributes(path, attribute), path, attribute);
+
+    static T One<T>(T[] values, string path, string attribute) => values.Length == 1 ? values[0]
+        : throw new DataFaultException($"{path}, attribute {attribute}", $"{values.Length} values", "one", "name the right attribute in the layout, or state the value there");
 }

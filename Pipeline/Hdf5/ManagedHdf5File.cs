@@ -1,5 +1,6 @@
 using System.Globalization;
 using PureHDF;
+using PureHDF.Filters;
 using PureHDF.Selections;
 using PureHDF.VOL.Native;
 
@@ -9,14 +10,22 @@ namespace Pipeline.Hdf5;
 sealed class ManagedHdf5File : IHdf5File
 {
     /// <summary>Links are followed one by one and not deeper than this.</summary>
-    const int DeepestPath = 32;
+    const int DeepestPath = 64;
+    const string UseLibrary = "install the HDF5 C library (on Debian the package libhdf5-103-1), which reads it, or write the file without";
     readonly string _path, _name;
     readonly NativeFile _file;
+    readonly Hazards _hazards;
     readonly Dictionary<string, IH5Dataset> _datasets = new(StringComparer.Ordinal);
+
+    static ManagedHdf5File() => H5Filter.Register(new ManagedLzf());
 
     public ManagedHdf5File(string path)
     {
         (_path, _name) = (path, Path.GetFileName(path));
+        using (FileStream file = File.OpenRead(path)) _hazards = FileScan.Of(file);
+        if (_hazards.HasFlag(Hazards.Links)) throw Refuse("/", "links to other places or files", "a file without them: a loop of them would end the program", UseLibrary);
+        if (_hazards.HasFlag(Hazards.PartialIntegers)) throw Refuse("/", "integers that fill only part of their bytes", "whole bytes", UseLibrary);
+        if (_hazards.HasFlag(Hazards.SkippedFilters)) throw Refuse("/", "chunks stored without one of their filters", "all chunks stored in one way", UseLibrary);
         _file = Guarded("/", () => H5File.Open(_path, FileMode.Open, FileAccess.Read, FileShare.Read));
     }
 
@@ -35,7 +44,8 @@ sealed class ManagedHdf5File : IHdf5File
             for (int d = 1; d < dimensions.Length; d++)
                 if (most[d] != dimensions[d])
                     throw Refuse(path, $"dimension {d} that may grow", "only the first dimension unlimited",
-                        "read the file with the C library, or copy it with fixed dimensions");
+                        UseLibrary);
+            if (dataset.Layout.Class == H5DataLayoutClass.VirtualStorage) throw Refuse(path, "a virtual dataset", "data in this file", UseLibrary);
             ulong[]? chunks = dataset.Layout.Class == H5DataLayoutClass.Chunked ? dataset.Layout.Chunks : null;
             CheckStorage(path, dataset, dimensions, chunks is null);
             return new DatasetShape([.. dimensions.Select(d => (long)d)], KindOf(dataset), (int)Math.Clamp(chunks?[0] ?? 1, 1, 1 << 20));
@@ -47,15 +57,17 @@ sealed class ManagedHdf5File : IHdf5File
         IH5Dataset dataset = Dataset(path);
         HyperslabSelection part = Rows(dataset, firstRow, rows);
         bool signed = dataset.Type.FixedPoint.IsSigned;
+        var held = new ManagedHolder(dataset, part);
         return Guarded(path, () => (dataset.Type.Size, signed) switch
         {
-            (1, true) => Widen(dataset.Read<sbyte[]>(part), v => (int)v),
-            (1, false) => Widen(dataset.Read<byte[]>(part), v => (int)v),
-            (2, true) => Widen(dataset.Read<short[]>(part), v => (int)v),
-            (2, false) => Widen(dataset.Read<ushort[]>(part), v => (int)v),
-            (4, true) => dataset.Read<int[]>(part),
-            (4, false) => Widen(dataset.Read<uint[]>(part), v => checked((int)v)),
-            (8, true) => Widen(dataset.Read<long[]>(part), v => checked((int)v)),
+            (1, true) => Array.ConvertAll(held.Read<sbyte>(), v => (int)v),
+            (1, false) => Array.ConvertAll(held.Read<byte>(), v => (int)v),
+            (2, true) => Array.ConvertAll(held.Read<short>(), v => (int)v),
+            (2, false) => Array.ConvertAll(held.Read<ushort>(), v => (int)v),
+            (4, true) => held.Read<int>(),
+            (4, false) => Array.ConvertAll(held.Read<uint>(), v => checked((int)v)),
+            (8, true) => Array.ConvertAll(held.Read<long>(), v => checked((int)v)),
+            (8, false) => Array.ConvertAll(held.Read<ulong>(), v => checked((int)v)),
             _ => throw Refuse(path, $"integers of {dataset.Type.Size} bytes", "integers that fit in 32 bits", "store the samples in a smaller type"),
         });
     }
@@ -64,53 +76,72 @@ sealed class ManagedHdf5File : IHdf5File
     {
         IH5Dataset dataset = Dataset(path);
         HyperslabSelection part = Rows(dataset, firstRow, rows);
-        return Guarded(path, () => dataset.Type.Size switch
-        {
-            4 => Widen(dataset.Read<float[]>(part), v => (double)v),
-            8 => dataset.Read<double[]>(part),
-            _ => throw Refuse(path, $"floating-point numbers of {dataset.Type.Size} bytes", "4 or 8 bytes", "store the samples as float or double"),
-        });
+        return Guarded(path, () => ManagedValues.Numbers(dataset.Type, new(dataset, part))
+            ?? throw Refuse(path, $"a {dataset.Type.Class} of {dataset.Type.Size} bytes", "numbers of 2, 4 or 8 bytes", "store the samples as float or double"));
     }
 
-    public double[] ReadNumbers(string path)
-    {
-        IH5Dataset dataset = Dataset(path);
-        return Guarded(path, () => Numbers(path, dataset));
-    }
+    public double[] ReadNumbers(string path, string? field = null) => Guarded(path, () => field is null ? Numbers(path, Dataset(path))
+        : [.. Column(path, Dataset(path), field).Select(v => v is string ? throw Refuse($"{path}, field {field}", "text", "numbers", "name a numeric field in the layout") : Convert.ToDouble(v, CultureInfo.InvariantCulture))]);
 
-    public string[] ReadLabels(string path)
+    public string[] ReadLabels(string path, string? field = null) => Guarded<string[]>(path, () =>
     {
         IH5Dataset dataset = Dataset(path);
-        if (KindOf(dataset) != ElementKind.Text)
-            return [.. ReadNumbers(path).Select(v => v.ToString(CultureInfo.InvariantCulture))];
+        if (field is not null) return FieldLabels(path, dataset, field);
         CheckRank(path, dataset, 1);
-        return Guarded(path, () => dataset.Read<string[]>().Select(s => (s ?? "").TrimEnd('\0', ' ')).ToArray());
-    }
-
-    public double ReadNumberAttribute(string path, string attribute) => Guarded($"{path}, attribute {attribute}", () =>
-    {
-        IH5Object holder = Find(path) ?? throw Missing(path);
-        if (!holder.AttributeExists(attribute))
-            throw Refuse($"{path}, attribute {attribute}", "no such attribute", "a number", "name the right attribute in the layout, or state the value there");
-        IH5Attribute found = holder.Attribute(attribute);
-        return (found.Type.Class, found.Type.Size) switch
+        return dataset.Type.Class switch
         {
-            (H5DataTypeClass.FloatingPoint, 8) => found.Read<double>(),
-            (H5DataTypeClass.FloatingPoint, 4) => found.Read<float>(),
-            (H5DataTypeClass.FixedPoint, 8) => found.Read<long>(),
-            (H5DataTypeClass.FixedPoint, 4) => found.Type.FixedPoint.IsSigned ? found.Read<int>() : found.Read<uint>(),
-            (H5DataTypeClass.FixedPoint, 2) => found.Type.FixedPoint.IsSigned ? found.Read<short>() : found.Read<ushort>(),
-            _ => throw Refuse($"{path}, attribute {attribute}", $"a {found.Type.Class}", "a number", "state the value in the layout"),
+            H5DataTypeClass.String or H5DataTypeClass.VariableLength => [.. dataset.Read<string[]>().Select(Trimmed)],
+            H5DataTypeClass.Enumerated => [.. ManagedValues.Whole(dataset.Type.Enumeration.BaseType, new(dataset)).Select(v => ManagedValues.NameOf(dataset.Type, v))],
+            _ => [.. Numbers(path, dataset).Select(v => v.ToString(CultureInfo.InvariantCulture))],
         };
     });
 
-    public string ReadTextAttribute(string path, string attribute) => Guarded($"{path}, attribute {attribute}", () =>
+    string[] FieldLabels(string path, IH5Dataset dataset, string field)
+    {
+        object[] values = Column(path, dataset, field);
+        IH5DataType type = dataset.Type.Compound.Members.First(m => m.Name == field).Type;
+        return [.. values.Select(v => v is string text ? Trimmed(text)
+            : type.Class == H5DataTypeClass.Enumerated ? ManagedValues.NameOf(type, Convert.ToInt64(v, CultureInfo.InvariantCulture)) : Convert.ToDouble(v, CultureInfo.InvariantCulture).ToString(CultureInfo.InvariantCulture))];
+    }
+
+    /// <summary>One field of a table; fields of other than the machine's order of bytes would be misread.</summary>
+    object[] Column(string path, IH5Dataset dataset, string field)
+    {
+        if (dataset.Type.Class != H5DataTypeClass.Compound) throw Refuse(path, Hdf5Walk.Word(dataset.Type), "a table with named fields", "name the right dataset in the layout");
+        if (_hazards.HasFlag(Hazards.BigEndian)) throw Refuse(path, "a table in a file with big-endian numbers", "numbers with the least significant byte first", UseLibrary);
+        CheckRank(path, dataset, 1);
+        CheckStorage(path, dataset, dataset.Space.Dimensions, false);
+        if (dataset.Type.Compound.Members.All(m => m.Name != field))
+            throw Refuse(path, $"no field \"{field}\"", $"one of {string.Join(", ", dataset.Type.Compound.Members.Select(m => m.Name))}", "name the right field in the layout");
+        return [.. dataset.Read<Dictionary<string, object>[]>().Select(row => row[field])];
+    }
+
+    public double[] ReadNumberAttributes(string path, string attribute) => Guarded($"{path}, attribute {attribute}", () =>
+    {
+        IH5Attribute found = Attribute(path, attribute);
+        return ManagedValues.Numbers(found.Type, new(found)) ?? throw Refuse($"{path}, attribute {attribute}", $"a {found.Type.Class}", "a number", "state the value in the layout");
+    });
+
+    public string[] ReadTextAttributes(string path, string attribute) => Guarded<string[]>($"{path}, attribute {attribute}", () =>
+    {
+        IH5Attribute found = Attribute(path, attribute);
+        bool scalar = found.Space.Rank == 0;
+        return found.Type.Class switch
+        {
+            H5DataTypeClass.String or H5DataTypeClass.VariableLength => [.. (scalar ? [found.Read<string>()] : found.Read<string[]>()).Select(Trimmed)],
+            H5DataTypeClass.Enumerated => [.. ManagedValues.Whole(found.Type.Enumeration.BaseType, new(found)).Select(v => ManagedValues.NameOf(found.Type, v))],
+            _ => [.. ReadNumberAttributes(path, attribute).Select(v => v.ToString(CultureInfo.InvariantCulture))],
+        };
+    });
+
+    IH5Attribute Attribute(string path, string attribute)
     {
         IH5Object holder = Find(path) ?? throw Missing(path);
-        if (!holder.AttributeExists(attribute)) throw Refuse($"{path}, attribute {attribute}", "no such attribute", "a label", "name the right attribute in the layout");
-        return holder.Attribute(attribute).Type.Class is H5DataTypeClass.String or H5DataTypeClass.VariableLength
-            ? holder.Attribute(attribute).Read<string>().TrimEnd('\0', ' ') : ReadNumberAttribute(path, attribute).ToString(CultureInfo.InvariantCulture);
-    });
+        return holder.AttributeExists(attribute) ? holder.Attribute(attribute)
+            : throw Refuse($"{path}, attribute {attribute}", "no such attribute", "an attribute of this name", "name the right attribute in the layout, or state the value there");
+    }
+
+    static string Trimmed(string? text) => (text ?? "").TrimEnd('\0', ' ');
 
     public IReadOnlyList<Hdf5Node> Describe(int most) => Guarded("/", () => Hdf5Walk.From(_file, most));
 
@@ -120,32 +151,12 @@ sealed class ManagedHdf5File : IHdf5File
     double[] Numbers(string path, IH5Dataset dataset)
     {
         CheckRank(path, dataset, 1);
-        bool real = dataset.Type.Class == H5DataTypeClass.FloatingPoint, signed = !real && dataset.Type.Class == H5DataTypeClass.FixedPoint && dataset.Type.FixedPoint.IsSigned;
-        return (real, dataset.Type.Size, signed) switch
-        {
-            (true, 8, _) => dataset.Read<double[]>(),
-            (true, 4, _) => Widen(dataset.Read<float[]>(), v => (double)v),
-            (false, 8, true) => Widen(dataset.Read<long[]>(), v => (double)v),
-            (false, 8, false) => Widen(dataset.Read<ulong[]>(), v => (double)v),
-            (false, 4, true) => Widen(dataset.Read<int[]>(), v => (double)v),
-            (false, 4, false) => Widen(dataset.Read<uint[]>(), v => (double)v),
-            (false, 2, true) => Widen(dataset.Read<short[]>(), v => (double)v),
-            (false, 2, false) => Widen(dataset.Read<ushort[]>(), v => (double)v),
-            (false, 1, true) => Widen(dataset.Read<sbyte[]>(), v => (double)v),
-            (false, 1, false) => Widen(dataset.Read<byte[]>(), v => (double)v),
-            _ => throw Refuse(path, $"a {dataset.Type.Class} of {dataset.Type.Size} bytes", "numbers", "name a numeric dataset in the layout"),
-        };
+        CheckStorage(path, dataset, dataset.Space.Dimensions, false);
+        return ManagedValues.Numbers(dataset.Type, new(dataset)) ?? throw Refuse(path, $"a {dataset.Type.Class} of {dataset.Type.Size} bytes", "numbers", "name a numeric dataset in the layout");
     }
 
-    /// <summary>A declared size that the file cannot hold is refused before memory is asked for it.</summary>
-    void CheckStorage(string path, IH5Dataset dataset, ulong[] dimensions, bool contiguous)
-    {
-        double bytes = dimensions.Aggregate((double)dataset.Type.Size, (a, d) => a * d);
-        long length = new FileInfo(_path).Length;
-        // deflate shrinks zeros by 1,030 at most, twice shuffled data no more
-        if (bytes > (contiguous ? 1.0 : 1100.0) * length + 4096)
-            throw Refuse(path, $"{bytes:G3} declared bytes in a file of {length}", "data that the file can hold", "the file is damaged or was never filled: record it again");
-    }
+    void CheckStorage(string path, IH5Dataset dataset, ulong[] dimensions, bool contiguous) =>
+        Hdf5Limits.CheckStorage(_name, path, dimensions.Aggregate((double)dataset.Type.Size, (a, d) => a * d), contiguous, new FileInfo(_path).Length);
 
     ElementKind KindOf(IH5Dataset dataset) => KindOf(dataset.Type);
 
@@ -153,7 +164,8 @@ sealed class ManagedHdf5File : IHdf5File
     {
         H5DataTypeClass.FixedPoint => ElementKind.Integer,
         H5DataTypeClass.FloatingPoint => ElementKind.Real,
-        H5DataTypeClass.String or H5DataTypeClass.VariableLength => ElementKind.Text,
+        H5DataTypeClass.String or H5DataTypeClass.VariableLength or H5DataTypeClass.Enumerated => ElementKind.Text,
+        H5DataTypeClass.Compound => ElementKind.Table,
         _ => ElementKind.Other,
     };
 
@@ -169,8 +181,6 @@ sealed class ManagedHdf5File : IHdf5File
         (starts[0], counts[0]) = ((ulong)first, (ulong)rows);
         return new HyperslabSelection(dataset.Space.Rank, starts, counts);
     }
-
-    static TTo[] Widen<TFrom, TTo>(TFrom[] values, Converter<TFrom, TTo> convert) => Array.ConvertAll(values, convert);
 
     IH5Dataset Dataset(string path)
     {
@@ -204,6 +214,10 @@ sealed class ManagedHdf5File : IHdf5File
     {
         try { return read(); }
         catch (DataFaultException) { throw; }
+        catch (Exception e) when (ManagedHolder.IsByteOrder(e))
+        {
+            throw Refuse(path, "big-endian numbers", "numbers with the least significant byte first", UseLibrary);
+        }
         catch (Exception e)
         {
             // the library throws many types for damaged files; each means the same to the user

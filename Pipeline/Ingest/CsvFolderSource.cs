@@ -18,7 +18,7 @@ sealed class CsvFolderSource : IShotSource
         string table = Path.Combine(path, layout.ShotTable);
         var files = new List<string>();
         _shots = ShotTable.ReadCsv(table, new CsvDialect(layout.Dialect.Separator, layout.Dialect.Comment, layout.Dialect.Decimal, layout.Dialect.Latin1), layout.Shots,
-            row => files.Add(Inside(path, row.Text(row.Column(layout.FileColumn)))));
+            row => files.Add(Inside(path, row.Text(row.Column(layout.FileColumn))))).ToShots(repeats: true);
         _traces = [.. files];
         InputFiles = [table, .. _traces];
         (double[] times, _, bool whole) = ReadTrace(_traces[0]);

@@ -13,7 +13,7 @@ sealed class Hdf5ClassesSource : Hdf5ShotSource
     readonly Hdf5ClassesLayout _layout;
     readonly List<(string Group, ShotInfo[] Shots)> _classes = [];
 
-    public Hdf5ClassesSource(string path, Hdf5ClassesLayout layout, DetectorKind kind) : base(path)
+    public Hdf5ClassesSource(string path, Hdf5ClassesLayout layout, DetectorKind kind, Hdf5Access? access = null) : base(path, layout, access)
     {
         _layout = layout;
         Begin(() =>
@@ -68,6 +68,8 @@ sealed class Hdf5ClassesSource : Hdf5ShotSource
         if (_classes.Count == 0) throw new DataFaultException(Name, $"no group \"{_layout.Groups}\"", "one group a kind and condition", "correct samples.groups in the layout");
     }
 
+    string ConditionOf(string label) => label.Length == 0 ? _layout.Shots.OnlyCondition ?? "off" : _layout.Shots.ConditionNames.GetValueOrDefault(label, label);
+
     ShotInfo[] ReadShots(string group, string kind, string condition)
     {
         ShotColumns c = _layout.Shots;
@@ -80,6 +82,6 @@ sealed class Hdf5ClassesSource : Hdf5ShotSource
         int label = Enumerable.Range(0, c.KindLabels.Count).FirstOrDefault(k => c.KindLabels[k] == kind, -1);
         if (label < 0) throw new DataFaultException($"{Name}, {group}", $"kind \"{kind}\"", $"one of {string.Join(", ", c.KindLabels)}", "add the label under [kinds] in the layout");
         return [.. Enumerable.Range(0, count).Select(k => new ShotInfo(numbers is null ? k : double.IsFinite(numbers[k]) ? (long)numbers[k] : -1, (ShotKind)label,
-            condition.Length > 0 ? condition : c.OnlyCondition ?? "off", probe?[k] ?? double.NaN, ablation?[k] ?? double.NaN, (detuning?[k] ?? double.NaN) * c.DetuningFactor))];
+            ConditionOf(condition), probe?[k] ?? double.NaN, ablation?[k] ?? double.NaN, (detuning?[k] ?? double.NaN) * c.DetuningFactor))];
     }
 }

@@ -12,20 +12,21 @@ sealed class Hdf5GroupsSource : Hdf5ShotSource
     readonly Hdf5GroupsLayout _layout;
     string[] _groups = [];
 
-    public Hdf5GroupsSource(string path, Hdf5GroupsLayout layout, DetectorKind kind) : base(path)
+    public Hdf5GroupsSource(string path, Hdf5GroupsLayout layout, DetectorKind kind, Hdf5Access? access = null) : base(path, layout, access)
     {
         _layout = layout;
         Begin(() =>
         {
             _groups = [.. File.Groups("/").Where(g => FileSystemName.MatchesSimpleExpression(layout.Groups, g, ignoreCase: false))];
             if (_groups.Length == 0) throw new DataFaultException(Name, $"no group \"{layout.Groups}\"", "one group a shot", "correct samples.groups in the layout");
-            return (StatedShape.Of(layout.Axis, layout.Meaning, _groups.Length, kind) with { LowestCode = layout.LowestCode, HighestCode = layout.HighestCode }, ReadShots());
+            ShotInfo[] shots = ReadShots();
+            return (StatedShape.Of(layout.Axis, layout.Meaning, shots.Length, kind) with { LowestCode = layout.LowestCode, HighestCode = layout.HighestCode, Unfilled = _groups.Length - shots.Length }, shots);
         });
     }
 
     public override IEnumerable<ShotBlock> ReadBlocks()
     {
-        for (int k = 0; k < _groups.Length; k++)
+        for (int k = 0; k < Shape.Shots; k++)
         {
             string path = $"{_groups[k]}/{_layout.Samples}";
             DatasetShape shape = File.Shape(path);
@@ -45,9 +46,7 @@ sealed class Hdf5GroupsSource : Hdf5ShotSource
     ShotInfo[] ReadShots()
     {
         ShotColumns c = _layout.Shots;
-        double[]? Numbers(string? attribute) => attribute is null ? null : [.. _groups.Select(g => File.ReadNumberAttribute(g, attribute))];
-        string[] Labels(string attribute) => [.. _groups.Select(g => File.ReadTextAttribute(g, attribute))];
-        return new ShotTable(Numbers(c.Number), Labels(c.Kind), c.Condition is { } condition ? Labels(condition) : null, Numbers(c.ProbeMonitor),
-            Numbers(c.AblationMonitor), Numbers(c.Detuning)).ToShots(Name, c);
+        return new ShotTable(Name, c, [.. c.Numeric.Select(a => a is null ? null : _groups.Select(g => File.ReadNumberAttribute(g, a)).ToArray())],
+            [.. c.Labels.Select(a => a is null ? null : _groups.Select(g => File.ReadTextAttribute(g, a)).ToArray())]).ToShots(repeats: true);
     }
 }

@@ -8,11 +8,14 @@ abstract class Hdf5ShotSource : IShotSource
 {
     ShotInfo[] _shots = [];
 
-    protected Hdf5ShotSource(string path)
+    protected Hdf5ShotSource(string path, ShotFileLayout layout, Hdf5Access? access)
     {
-        (Name, InputFiles) = (System.IO.Path.GetFileName(path), [path]);
-        File = Hdf5Files.Open(path);
+        (Path, Name) = (path, System.IO.Path.GetFileName(path));
+        InputFiles = layout.Shots is { Place: HousekeepingPlace.File, PlaceName: { } table } ? [path, ShotTable.Beside(path, table)] : [path];
+        File = Hdf5Files.Open(path, (access ?? Hdf5Access.Usual) with { ExternalLinks = layout.ExternalLinks });
     }
+
+    protected string Path { get; }
 
     protected IHdf5File File { get; }
     /// <summary>For faults.</summary>
@@ -32,7 +35,10 @@ abstract class Hdf5ShotSource : IShotSource
     /// <summary>Reads shape and housekeeping.</summary>
     protected void Begin(Func<(RecordShape, ShotInfo[])> read)
     {
-        try { (Shape, _shots) = read(); }
+        try
+        {
+            (Shape, _shots) = read();
+        }
         catch
         {
             File.Dispose();

@@ -11,17 +11,19 @@ sealed class Hdf5StampsSource : Hdf5ShotSource
     const int StampsAtOnce = 4_000_000, BlockSamples = 16_000_000;
     readonly Hdf5StampsLayout _layout;
     long _stamps;
+    (double Start, double Step)? _ticks;
 
-    public Hdf5StampsSource(string path, Hdf5StampsLayout layout, DetectorKind kind) : base(path)
+    public Hdf5StampsSource(string path, Hdf5StampsLayout layout, DetectorKind kind, Hdf5Access? access = null) : base(path, layout, access)
     {
         _layout = layout;
         Begin(() =>
         {
             if (kind != DetectorKind.Counting) throw new DataFaultException(Name, "time stamps for an analog detector", "a counting detector", "correct detector.kind in apparatus.toml");
-            ShotInfo[] shots = ShotTable.ReadHdf5(File, layout.Shots).ToShots(Name, layout.Shots);
+            ShotInfo[] shots = ShotTable.ReadHdf5(File, path, layout.Shots).ToShots(repeats: true);
             _stamps = File.Shape(layout.Times).Dimensions[0];
             if (File.Shape(layout.ShotIndex).Dimensions[0] != _stamps)
                 throw new DataFaultException($"{Name}, {layout.ShotIndex}", $"{File.Shape(layout.ShotIndex).Dimensions[0]} values", $"{_stamps}, one for each time", "the file is damaged: record it again");
+            _ticks = WholeTicks(layout, File.Shape(layout.Times).Elements);
             return (StatedShape.Of(layout.Axis, layout.Meaning, shots.Length, kind), shots);
         });
     }
@@ -33,7 +35,7 @@ sealed class Hdf5StampsSource : Hdf5ShotSource
         for (long from = 0; from < _stamps; from += StampsAtOnce)
         {
             int count = (int)Math.Min(StampsAtOnce, _stamps - from);
-            double[] times = Numbers(_layout.Times, from, count), index = Numbers(_layout.ShotIndex, from, count);
+            double[] times = File.ReadReals(_layout.Times, from, count), index = File.ReadReals(_layout.ShotIndex, from, count);
             for (int k = 0; k < count; k++)
             {
                 int shot = last = ShotOf(index[k], last, from + k);
@@ -61,14 +63,23 @@ sealed class Hdf5StampsSource : Hdf5ShotSource
             $"a position that does not fall, below {Shape.Shots}", "sort the stamps by shot");
     }
 
+    /// <summary>Whole stamps are sorted into whole bins by whole numbers. A time in floating point that is a bin's edge but for its last
+    /// digits counts as the edge.</summary>
     int SampleOf(double time, long stamp)
     {
-        double place = Math.Floor((time * _layout.TimeFactor - _layout.Axis.Start) / _layout.Axis.Step);
+        double place = _ticks is { } ticks ? Math.Floor((time - ticks.Start) / ticks.Step) : Place((time * _layout.TimeFactor - _layout.Axis.Start) / _layout.Axis.Step);
         if (place >= 0 && place < Shape.Samples) return (int)place;
         throw new DataFaultException($"{Name}, {_layout.Times}, stamp {stamp.ToString(CultureInfo.InvariantCulture)}", time.ToString(CultureInfo.InvariantCulture),
             $"a time inside the record, {_layout.Axis.Start:G6} s to {_layout.Axis.Start + Shape.Samples * _layout.Axis.Step:G6} s", "correct start, step and samples in the layout");
     }
 
-    double[] Numbers(string path, long from, int count) => File.Shape(path).Elements == ElementKind.Integer
-        ? Array.ConvertAll(File.ReadIntegers(path, from, count), v => (double)v) : File.ReadReals(path, from, count);
+    static double Place(double bins) => Math.Abs(bins - Math.Round(bins)) < 1e-9 * Math.Max(1, Math.Abs(bins)) ? Math.Round(bins) : Math.Floor(bins);
+
+    /// <summary>Start and step in ticks of the time tagger, where the stamps are whole and both are a whole number of ticks.</summary>
+    static (double Start, double Step)? WholeTicks(Hdf5StampsLayout layout, ElementKind elements)
+    {
+        double start = layout.Axis.Start / layout.TimeFactor, step = layout.Axis.Step / layout.TimeFactor;
+        bool whole = elements == ElementKind.Integer && Math.Abs(start - Math.Round(start)) < 1e-6 && Math.Abs(step - Math.Round(step)) < 1e-6 && Math.Round(step) >= 1;
+        return whole ? (Math.Round(start), Math.Round(step)) : null;
+    }
 }

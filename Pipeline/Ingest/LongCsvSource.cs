@@ -18,9 +18,9 @@ sealed class LongCsvSource : IShotSource
         (_path, _name, _layout) = (path, Path.GetFileName(path), layout);
         if (kind != DetectorKind.Counting)
             throw new DataFaultException(_name, "a long CSV for an analog detector", "a counting detector: samples that are left out are zero counts", "export one column a shot");
-        string table = Path.Combine(Path.GetDirectoryName(path) ?? "", layout.ShotTable.Replace("{run}", Path.GetFileNameWithoutExtension(path), StringComparison.Ordinal));
+        string table = ShotTable.Beside(path, layout.ShotTable);
         InputFiles = [path, table];
-        _shots = ShotTable.ReadCsv(table, layout.Dialect, layout.Shots);
+        _shots = ShotTable.ReadCsv(table, layout.Dialect, layout.Shots).ToShots();
         Shape = StatedShape.Of(layout.Axis, layout.Meaning, _shots.Length, kind);
     }
 

@@ -15,23 +15,6 @@ public enum SampleMeaning
 /// <param name="Factor">What one unit of the attribute is in SI units.</param>
 public sealed record StatedOrStored(double? Value, string? Attribute, double Factor = 1);
 
-/// <summary>Where the housekeeping of each shot stands: dataset paths, or column names of the shot table. Null: the file has none.</summary>
-public sealed record ShotColumns
-{
-    public string? Number { get; init; }
-    public required string Kind { get; init; }
-    /// <summary>Null: every shot belongs to condition <see cref="OnlyCondition"/>.</summary>
-    public string? Condition { get; init; }
-    public string? OnlyCondition { get; init; }
-    public string? ProbeMonitor { get; init; }
-    public string? AblationMonitor { get; init; }
-    public string? Detuning { get; init; }
-    /// <summary>Hz in one unit of the detuning column.</summary>
-    public double DetuningFactor { get; init; } = 1;
-    /// <summary>Labels in the file for signal, no ablation, probe blocked and dark shots, in this order.</summary>
-    public required IReadOnlyList<string> KindLabels { get; init; }
-}
-
 /// <summary>Where a shot file keeps what. One subtype a format.</summary>
 public abstract record ShotFileLayout
 {
@@ -42,9 +25,11 @@ public abstract record ShotFileLayout
     /// <summary>Codes at or beyond these are clipped; null where not stated.</summary>
     public int? LowestCode { get; init; }
     public int? HighestCode { get; init; }
+    /// <summary>HDF5: whether links into other files are followed.</summary>
+    public bool ExternalLinks { get; init; }
 }
 
-/// <summary>HDF5, one dataset [shot, sample].</summary>
+/// <summary>HDF5, one dataset [shot, sample], or [shot, channel, sample].</summary>
 public sealed record Hdf5MatrixLayout : ShotFileLayout
 {
     /// <summary>Path of the sample dataset.</summary>
@@ -55,6 +40,10 @@ public sealed record Hdf5MatrixLayout : ShotFileLayout
     public required StatedOrStored Step { get; init; }
     public required StatedOrStored Scale { get; init; }
     public required StatedOrStored Offset { get; init; }
+    /// <summary>Which channel of [shot, channel, sample], from 0; null where there is no such dimension.</summary>
+    public int? Channel { get; init; }
+    /// <summary>Shots that were written, where the file was made larger beforehand; null: all.</summary>
+    public StatedOrStored? Written { get; init; }
 }
 
 /// <summary>How a CSV file is written.</summary>

@@ -1,4 +1,5 @@
 using Pipeline.Apparatus;
+using Pipeline.Hdf5;
 
 namespace Pipeline.Ingest;
 
@@ -8,16 +9,17 @@ public static class ShotFiles
     /// <param name="path">The run's main file.</param>
     /// <param name="layout">What it keeps where.</param>
     /// <param name="kind">What the detector records.</param>
+    /// <param name="access">HDF5: which library reads.</param>
     /// <exception cref="DataFaultException">The file cannot be used.</exception>
-    public static IShotSource Open(string path, ShotFileLayout layout, DetectorKind kind) => layout switch
+    public static IShotSource Open(string path, ShotFileLayout layout, DetectorKind kind, Hdf5Access? access = null) => layout switch
     {
-        Hdf5MatrixLayout matrix => new Hdf5MatrixSource(path, matrix, kind),
+        Hdf5MatrixLayout matrix => new Hdf5MatrixSource(path, matrix, kind, access),
         WideCsvLayout wide => new WideCsvSource(path, wide, kind),
         LongCsvLayout list => new LongCsvSource(path, list, kind),
         CsvFolderLayout folder => new CsvFolderSource(path, folder, kind),
-        Hdf5StampsLayout stamps => new Hdf5StampsSource(path, stamps, kind),
-        Hdf5GroupsLayout groups => new Hdf5GroupsSource(path, groups, kind),
-        Hdf5ClassesLayout classes => new Hdf5ClassesSource(path, classes, kind),
+        Hdf5StampsLayout stamps => new Hdf5StampsSource(path, stamps, kind, access),
+        Hdf5GroupsLayout groups => new Hdf5GroupsSource(path, groups, kind, access),
+        Hdf5ClassesLayout classes => new Hdf5ClassesSource(path, classes, kind, access),
         _ => throw new ArgumentOutOfRangeException(nameof(layout), layout.GetType().Name, "has no reader"),
     };
 }

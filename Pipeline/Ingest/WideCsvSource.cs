@@ -20,10 +20,9 @@ sealed class WideCsvSource : IShotSource
     public WideCsvSource(string path, WideCsvLayout layout, DetectorKind kind, int budget = DefaultBudget)
     {
         (_path, _name, _layout, _budget) = (path, Path.GetFileName(path), layout, budget);
-        string tableName = layout.ShotTable.Replace("{run}", Path.GetFileNameWithoutExtension(path), StringComparison.Ordinal);
-        string tablePath = Path.Combine(Path.GetDirectoryName(path) ?? "", tableName);
+        string tablePath = ShotTable.Beside(path, layout.ShotTable);
         InputFiles = [path, tablePath];
-        _shots = ShotTable.ReadCsv(tablePath, layout.Dialect, layout.Shots);
+        _shots = ShotTable.ReadCsv(tablePath, layout.Dialect, layout.Shots).ToShots();
         using (CsvTable table = Open()) _columns = ColumnsOf(table);
         TimeScan scan = Scan();
         _whole = scan.Whole;

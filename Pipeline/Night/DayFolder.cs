@@ -7,11 +7,16 @@ using Pipeline.Ingest;
 namespace Pipeline.Night;
 
 /// <summary>A file of the day that a rule calls a run.</summary>
-/// <param name="Name">File name without extension.</param>
+/// <param name="Name">File name without extension, or as the rule names it.</param>
 /// <param name="Path">The file.</param>
 /// <param name="Rule">The rule.</param>
 /// <param name="Layout">Its layout.</param>
-public sealed record RunFile(string Name, string Path, RunRule Rule, ShotFileLayout Layout);
+public sealed record RunFile(string Name, string Path, RunRule Rule, ShotFileLayout Layout)
+{
+    /// <summary>The table of shots beside the file; null where there is none.</summary>
+    public string? ShotTablePath => (Layout switch { WideCsvLayout wide => wide.ShotTable, LongCsvLayout list => list.ShotTable, { Shots: { Place: HousekeepingPlace.File, PlaceName: var name } } => name, _ => null })
+        is { } table ? System.IO.Path.Combine(System.IO.Path.GetDirectoryName(Path) ?? "", table.Replace("{run}", System.IO.Path.GetFileNameWithoutExtension(Path), StringComparison.Ordinal)) : null;
+}
 
 /// <summary>What a day's folder holds.</summary>
 public sealed class DayFolder
@@ -32,7 +37,7 @@ public sealed class DayFolder
         if (!Directory.Exists(path)) throw new DataFaultException(path, "no such folder", "a day's folder with shot files", "check the name");
         string[] files = [.. Directory.GetFileSystemEntries(path).Select(f => System.IO.Path.GetFileName(f)).Where(f => f[0] != '.').Order(StringComparer.Ordinal)];
         var predictions = lab.Predictions.Select(p => p.File).ToHashSet(StringComparer.Ordinal);
-        RunFile[] runs = [.. files.Where(f => !predictions.Contains(f)).Select(f => RunOf(path, f, lab)).OfType<RunFile>()];
+        RunFile[] runs = [.. files.Where(f => !predictions.Contains(f)).SelectMany(f => RunsOf(path, f, lab)).OrderBy(r => r.Name, StringComparer.Ordinal)];
         foreach (var same in runs.GroupBy(r => r.Name, StringComparer.Ordinal).Where(g => g.Count() > 1))
             throw new DataFaultException(path, $"two runs named {same.Key}: {string.Join(", ", same.Select(r => System.IO.Path.GetFileName(r.Path)))}", "one file a name", "rename one of them");
         var used = runs.SelectMany(r => Companions(r)).ToHashSet(StringComparer.Ordinal);
@@ -44,11 +49,14 @@ public sealed class DayFolder
         ?? throw new DataFaultException(Name, $"no run \"{name}\"", Runs.Count == 0 ? "at least one run" : $"one of {string.Join(", ", Runs.Select(r => r.Name))}",
             "check the name, or the [[runs]] rules in night.toml");
 
-    static RunFile? RunOf(string folder, string file, LabConfiguration lab)
+    /// <summary>One run by the first rule without a name that fits, and one by each rule with a name.</summary>
+    static IEnumerable<RunFile> RunsOf(string folder, string file, LabConfiguration lab)
     {
         bool isFolder = Directory.Exists(System.IO.Path.Combine(folder, file));
-        RunRule? rule = lab.Runs.FirstOrDefault(r => FileSystemName.MatchesSimpleExpression(r.Match, file, ignoreCase: false) && lab.ShotLayouts[r.Layout] is CsvFolderLayout == isFolder);
-        return rule is null ? null : new RunFile(NameOf(folder, file), System.IO.Path.Combine(folder, file), rule, lab.ShotLayouts[rule.Layout]);
+        RunRule[] fits = [.. lab.Runs.Where(r => FileSystemName.MatchesSimpleExpression(r.Match, file, ignoreCase: false) && lab.ShotLayouts[r.Layout] is CsvFolderLayout == isFolder)];
+        string name = NameOf(folder, file);
+        return fits.Where(r => r.Name is null).Take(1).Concat(fits.Where(r => r.Name is not null))
+            .Select(r => new RunFile(r.Name?.Replace("{file}", name, StringComparison.Ordinal) ?? name, System.IO.Path.Combine(folder, file), r, lab.ShotLayouts[r.Layout]));
     }
 
     static string NameOf(string folder, string file) =>
@@ -57,8 +65,7 @@ public sealed class DayFolder
     static IEnumerable<string> Companions(RunFile run)
     {
         yield return System.IO.Path.GetFileName(run.Path);
-        string? table = run.Layout switch { WideCsvLayout wide => wide.ShotTable, LongCsvLayout list => list.ShotTable, _ => null };
-        if (table is not null) yield return table.Replace("{run}", run.Name, StringComparison.Ordinal);
+        if (run.ShotTablePath is { } table) yield return System.IO.Path.GetFileName(table);
     }
 }
 

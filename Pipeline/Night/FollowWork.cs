@@ -69,8 +69,7 @@ public sealed class FollowWork(LabConfiguration lab, string path, string results
         var files = new List<FileInfo>();
         if (Directory.Exists(run.Path)) files.AddRange(new DirectoryInfo(run.Path).GetFiles());
         else files.Add(new FileInfo(run.Path));
-        string? table = run.Layout switch { WideCsvLayout wide => wide.ShotTable, LongCsvLayout list => list.ShotTable, _ => null };
-        if (table is not null) files.Add(new FileInfo(Path.Combine(Path.GetDirectoryName(run.Path) ?? "", table.Replace("{run}", run.Name, StringComparison.Ordinal))));
+        if (run.ShotTablePath is { } table) files.Add(new FileInfo(table));
         FileInfo[] there = [.. files.Where(f => f.Exists)];
         return new Stamp(there.Sum(f => f.Length), there.Select(f => f.LastWriteTimeUtc).DefaultIfEmpty().Max(), there.Length);
     }

@@ -18,6 +18,7 @@ public sealed class RunWork
 {
     const double ManyCuts = 0.02;
     readonly LabConfiguration _lab;
+    readonly Apparatus.Setup _setup;
     readonly DayFolder _day;
     readonly RunFile _run;
     readonly IReadOnlyList<InputFile> _inputs;
@@ -31,12 +32,13 @@ public sealed class RunWork
     public RunWork(LabConfiguration lab, DayFolder day, RunFile run, string results)
     {
         (_lab, _day, _run, Folder) = (lab, day, run, Path.Combine(results, run.Name));
-        using (IShotSource source = ShotFiles.Open(run.Path, run.Layout, lab.Setup.Detector.Kind))
+        _setup = lab.SetupFor(run.Rule);
+        using (IShotSource source = ShotFiles.Open(run.Path, run.Layout, _setup.Detector.Kind))
         {
             _inputs = [.. source.InputFiles.Select(f => Hashes.Of(day.Path, f))];
             _reader = source.Reader;
         }
-        string all = string.Join('\n', [.. _inputs.Select(i => $"{i.Name} {i.Sha256}"), lab.Digest, ProgramVersion.Text, $"{RunAnalysis.NumericalVersion}"]);
+        string all = string.Join('\n', [.. _inputs.Select(i => $"{i.Name} {i.Sha256}"), lab.Digest, ProgramVersion.Text, $"{RunAnalysis.NumericalVersion}", $"{run.Rule}"]);
         _fingerprint = Convert.ToHexStringLower(SHA256.HashData(Encoding.UTF8.GetBytes(all)));
     }
 
@@ -49,8 +51,8 @@ public sealed class RunWork
         BinnedRun? known = ReducedFile.Read(Folder, _fingerprint);
         reused = known is not null;
         if (known is not null) return known;
-        using IShotSource source = ShotFiles.Open(_run.Path, _run.Layout, _lab.Setup.Detector.Kind);
-        BinnedRun run = Reducer.Reduce(source.Shape, source.Shots, source.ReadBlocks(), _lab.Setup.Detector, _lab.Analysis.Reduction);
+        using IShotSource source = ShotFiles.Open(_run.Path, _run.Layout, _setup.Detector.Kind);
+        BinnedRun run = Reducer.Reduce(source.Shape, source.Shots, source.ReadBlocks(), _setup.Detector, _lab.Analysis.Reduction);
         ReducedFile.Write(Folder, _fingerprint, run);
         return run;
     }
@@ -61,7 +63,7 @@ public sealed class RunWork
         IReadOnlyList<SpectrumOutcome>? known = StageFiles.ReadFits(Folder, _fingerprint);
         reused = known is not null;
         if (known is not null) return known;
-        IReadOnlyList<SpectrumOutcome> fits = WithUncut(run, RunAnalysis.Fit(run, _run.Rule.Mode, _lab.Setup, _lab.Analysis));
+        IReadOnlyList<SpectrumOutcome> fits = WithUncut(run, RunAnalysis.Fit(run, _run.Rule.Mode, _setup, _lab.Analysis));
         StageFiles.WriteFits(Folder, _fingerprint, fits);
         return fits;
     }
@@ -79,7 +81,7 @@ public sealed class RunWork
                 predictions[condition] = new ConditionPrediction(molecules, rule.Normalisation == Normalisation.Relative);
                 files.Add(Hashes.Of(_day.Path, path));
             }
-        (IReadOnlyList<ConditionOutcome> conditions, Comparison.Verdict verdict) = RunAnalysis.Compare(fits, predictions, _lab.Setup, _lab.Analysis);
+        (IReadOnlyList<ConditionOutcome> conditions, Comparison.Verdict verdict) = RunAnalysis.Compare(fits, predictions, _setup, _lab.Analysis);
         var outcome = new RunOutcome
         {
             Name = _run.Name, Mode = _run.Rule.Mode, Tally = ShotTally.Of(run), Conditions = conditions, Verdict = verdict,
@@ -99,9 +101,9 @@ public sealed class RunWork
     {
         double share = (double)run.Cuts.Sum(c => c.Numbers.Count) / run.ShotsRead;
         if (share <= ManyCuts) return fits;
-        using IShotSource source = ShotFiles.Open(_run.Path, _run.Layout, _lab.Setup.Detector.Kind);
-        BinnedRun uncut = Reducer.Reduce(source.Shape, source.Shots, source.ReadBlocks(), _lab.Setup.Detector, _lab.Analysis.Reduction.WithoutCuts());
-        IReadOnlyList<SpectrumOutcome> all = RunAnalysis.Fit(uncut, _run.Rule.Mode, _lab.Setup, _lab.Analysis);
+        using IShotSource source = ShotFiles.Open(_run.Path, _run.Layout, _setup.Detector.Kind);
+        BinnedRun uncut = Reducer.Reduce(source.Shape, source.Shots, source.ReadBlocks(), _setup.Detector, _lab.Analysis.Reduction.WithoutCuts());
+        IReadOnlyList<SpectrumOutcome> all = RunAnalysis.Fit(uncut, _run.Rule.Mode, _setup, _lab.Analysis);
         return [.. fits.Select(f => f with { Remarks = [.. f.Remarks, UncutRemark(share, f, all.FirstOrDefault(a => a.Signal.Condition == f.Signal.Condition))] })];
     }
 

@@ -98,17 +98,22 @@ sealed class FoldSums
         return [.. Enumerable.Range(0, Parts).Select(k => timeConstant * Parts * (Beyond((double)k / Parts) - Beyond((k + 1.0) / Parts)))];
     }
 
-    public FoldedPrediction Result() => new()
+    public FoldedPrediction Result()
     {
-        Signal = _signal,
-        Variance = _variance,
-        EffectiveSize = Weight * Weight / _squares,
-        Molecules = Weight,
-        MeanSpeed = _speed / Weight,
-        BelowCapture = _below,
-        Spectrum = _spectrum,
-        Outside = _outside,
-    };
+        // the undershoot's own share of the variance is smaller by bin width over coupling time, and left out
+        Coupling.Apply(_signal, _axis, _setup.Detector.CouplingTime.Value);
+        return new()
+        {
+            Signal = _signal,
+            Variance = _variance,
+            EffectiveSize = Weight * Weight / _squares,
+            Molecules = Weight,
+            MeanSpeed = _speed / Weight,
+            BelowCapture = _below,
+            Spectrum = _spectrum,
+            Outside = _outside,
+        };
+    }
 }
 
 /// <summary>Yield and pumping by speed, tabulated so that a hundred thousand molecules cost as little as a few hundred.</summary>

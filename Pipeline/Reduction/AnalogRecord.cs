@@ -2,7 +2,8 @@ namespace Pipeline.Reduction;
 
 /// <summary>One analog record, less the mean of its own time before the trigger.</summary>
 /// <remarks>The offset of a digitiser walks from shot to shot; scattered light and dark current that are steady go with it, in every kind of
-/// shot alike. The error of the baseline moves all bins of the shot together, and shows in the scatter between blocks of shots.</remarks>
+/// shot alike. The error of the baseline moves all bins of the shot together: it shows in the scatter between blocks of shots, and is a
+/// common cause of the summed signal.</remarks>
 sealed class AnalogRecord
 {
     /// <summary>Noise that a trigger mark must exceed.</summary>
@@ -11,7 +12,11 @@ sealed class AnalogRecord
     readonly int _trigger;
     readonly double _noise;
 
-    AnalogRecord(double[] volts, RecordShape shape, int trigger, double noise) => (Volts, _shape, _trigger, _noise) = (volts, shape, trigger, noise);
+    AnalogRecord(double[] volts, RecordShape shape, int trigger, double noise, double baselineVariance) =>
+        (Volts, _shape, _trigger, _noise, BaselineVariance) = (volts, shape, trigger, noise, baselineVariance);
+
+    /// <summary>Variance of the baseline that was subtracted, V^2.</summary>
+    public double BaselineVariance { get; }
 
     /// <summary>[samples] V, baseline subtracted.</summary>
     public double[] Volts { get; }
@@ -28,7 +33,22 @@ sealed class AnalogRecord
         for (int i = 0; i < quiet; i++) baseline += volts[i] / quiet;
         for (int i = 0; i < quiet; i++) squares += (volts[i] - baseline) * (volts[i] - baseline) / quiet;
         for (int i = 0; i < volts.Length; i++) volts[i] -= baseline;
-        return new AnalogRecord(volts, shape, trigger, Math.Sqrt(squares));
+        return new AnalogRecord(volts, shape, trigger, Math.Sqrt(squares), VarianceOfMean(volts.AsSpan(0, quiet)));
+    }
+
+    /// <summary>From the scatter of segments, which are longer than the noise remembers.</summary>
+    static double VarianceOfMean(ReadOnlySpan<double> quiet)
+    {
+        const int Segments = 8;
+        double sum = 0, squares = 0;
+        int length = quiet.Length / Segments;
+        if (length == 0) return 0;
+        for (int s = 0; s < Segments; s++)
+        {
+            double mean = System.Numerics.Tensors.TensorPrimitives.Sum(quiet.Slice(s * length, length)) / length;
+            (sum, squares) = (sum + mean, squares + mean * mean);
+        }
+        return Math.Max(0, squares / Segments - sum / Segments * (sum / Segments)) / (Segments - 1);
     }
 
     /// <summary>Whether anything clear of the noise happens soon after the trigger.</summary>

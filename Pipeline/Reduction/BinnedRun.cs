@@ -17,6 +17,8 @@ public sealed record ShotGroup
     public required double[] BlockAblationMonitor { get; init; }
     /// <summary>[samples] sum over all kept shots at full resolution.</summary>
     public required double[] FullSum { get; init; }
+    /// <summary>Analog: variance of the summed baselines that were subtracted, V^2.</summary>
+    public double BaselineVariance { get; init; }
 
     /// <summary>Kept shots.</summary>
     public double Shots => BlockShots.Sum();

@@ -29,6 +29,9 @@ sealed class GroupSums(string condition, ShotKind kind, RecordShape shape, Signa
         }
     }
 
+    /// <summary>Analog: variance of the summed baselines, V^2.</summary>
+    public double BaselineVariance { get; set; }
+
     public void Add(ReadOnlySpan<double> values, double probe, double ablation)
     {
         double[] bins = Begin(probe, ablation);
@@ -62,6 +65,7 @@ sealed class GroupSums(string condition, ShotKind kind, RecordShape shape, Signa
         Kind = kind,
         BlockSums = [.. _sums.Select(PhysicalBlock)],
         BlockShots = [.. _shots],
+        BaselineVariance = BaselineVariance,
         BlockProbeMonitor = [.. _probe],
         BlockAblationMonitor = [.. _ablation],
         FullSum = [.. _codeSum.Select((codes, i) => (codes + _valueSum[i]) * shape.Scale + shape.Offset * _kept)],

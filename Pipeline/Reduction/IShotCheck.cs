@@ -21,7 +21,7 @@ public static class ShotChecks
 {
     public static IReadOnlyList<IShotCheck> For(ReductionSettings settings, RecordShape shape, IReadOnlyList<ShotInfo> allShots)
     {
-        var checks = new List<IShotCheck>();
+        var checks = new List<IShotCheck> { new RepeatedShot() };
         if (settings.CutFlatRecords) checks.Add(new MissingTrigger());
         if (settings.UnlockedBeyondHz is { } limit) checks.Add(new UnlockedProbe(limit));
         if (settings.MonitorOutlierBeyond is { } deviations) checks.Add(new MonitorOutlier(deviations, allShots));
@@ -29,6 +29,13 @@ public static class ShotChecks
             checks.Add(new Saturated(shape.LowestCode ?? int.MinValue, shape.HighestCode ?? int.MaxValue));
         return checks;
     }
+}
+
+/// <summary>An earlier shot of the file has the same number: written twice, as after a restart of the acquisition.</summary>
+sealed class RepeatedShot : IShotCheck
+{
+    public string Reason => "repeated shot";
+    public bool Cuts(in ShotView shot) => shot.Info.Repeated;
 }
 
 /// <summary>The record is one constant value: the digitiser never ran.</summary>

@@ -21,4 +21,6 @@ public sealed record RecordShape
     /// <summary>Codes at or beyond these are clipped; null where the range is not stated.</summary>
     public int? LowestCode { get; init; }
     public int? HighestCode { get; init; }
+    /// <summary>Places at the end of the file that were made beforehand and hold no shot.</summary>
+    public int Unfilled { get; init; }
 }

@@ -39,7 +39,11 @@ sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector
     readonly Dictionary<(string, ShotKind), int> _recorded = allShots.CountBy(s => (s.Condition, s.Kind)).ToDictionary();
     readonly Dictionary<(string, ShotKind), GroupSums> _groups = [];
     readonly SortedDictionary<string, List<long>> _cuts = new(StringComparer.Ordinal);
+    readonly TransferLine? _transfer = shape.Kind == DetectorKind.Analog ? new TransferLine(detector, shape.TickSeconds) : null;
     readonly List<ShotInfo> _empty = [];
+    /// <summary>Counting: empty records since the last one that was not.</summary>
+    int _emptyAtEnd;
+    double[] _previous = [];
     readonly List<string> _remarks = [];
     int _read;
 
@@ -76,14 +80,31 @@ sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector
         ShotInfo info = block.Shots[shot];
         if (!Kept(info, recorded.Min(), recorded.Max())) return;
         for (int i = 0; i < recorded.Length; i++) recorded[i] = recorded[i] * shape.Scale + shape.Offset;
+        // noise never comes twice: the digitiser handed out its old buffer
+        bool same = _previous.AsSpan().SequenceEqual(recorded);
+        _previous = [.. recorded];
+        if (same)
+        {
+            Cut("repeated record", info.Number);
+            return;
+        }
         AnalogRecord record = AnalogRecord.Of(recorded, shape);
-        if (settings.TriggerMarkWithinSeconds is { } within && !record.HasMark(within)) Cut("missing trigger", info.Number);
-        else Group(info).Add(record.Volts, Probe(info), Ablation(info));
+        if (settings.TriggerMarkWithinSeconds is { } within && !record.HasMark(within))
+        {
+            Cut("missing trigger", info.Number);
+            return;
+        }
+        GroupSums group = Group(info);
+        group.Add(record.Volts, Probe(info), Ablation(info));
+        group.BaselineVariance += record.BaselineVariance;
+        _transfer?.Add(info, record.Volts);
     }
 
     bool Kept(ShotInfo info, double low, double high)
     {
-        if (shape.Kind == DetectorKind.Counting && settings.CutFlatRecords && low == 0 && high == 0)
+        bool empty = shape.Kind == DetectorKind.Counting && low == 0 && high == 0;
+        _emptyAtEnd = empty ? _emptyAtEnd + 1 : 0;
+        if (empty && settings.CutFlatRecords && !info.Repeated)
         {
             _empty.Add(info);
             return false;
@@ -125,7 +146,10 @@ sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector
 
     public BinnedRun Finish(double plausibleCounts)
     {
+        if (shape.Unfilled > 0) _remarks.Add(string.Create(CultureInfo.InvariantCulture, $"{shape.Unfilled} places at the end of the file were made beforehand and hold no shot"));
+        JudgeEnd(plausibleCounts);
         JudgeEmptyRecords(plausibleCounts);
+        if (_transfer?.Remark() is { } line) _remarks.Add(line);
         return new BinnedRun
         {
             DetectorKind = shape.Kind,
@@ -138,13 +162,26 @@ sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector
         };
     }
 
+    /// <summary>Empty records at the end of the file are places that were never written, where together they should have held many steady
+    /// counts: single ones may each be too short to tell.</summary>
+    void JudgeEnd(double plausibleCounts)
+    {
+        ShotInfo[] end = [.. _empty.TakeLast(Math.Min(_emptyAtEnd, _empty.Count))];
+        double expected = end.GroupBy(s => (s.Condition, s.Kind)).Sum(g => g.Count() * Expected(g.First()));
+        if (end.Length < 2 || expected < plausibleCounts) return;
+        foreach (ShotInfo shot in end) Cut("never written", shot.Number);
+        _empty.RemoveRange(_empty.Count - end.Length, end.Length);
+    }
+
+    double Expected(ShotInfo shot) => _groups.TryGetValue((shot.Condition, shot.Kind), out GroupSums? sums) ? SteadyCounts(sums.ToGroup()) : 0;
+
     /// <summary>A counting record without a single count is a missing trigger only where steady light and dark counts would have
     /// shown; else it is a legitimate zero, and cutting it would bias the mean.</summary>
     void JudgeEmptyRecords(double plausibleCounts)
     {
         foreach (var kind in _empty.GroupBy(s => (s.Condition, s.Kind)))
         {
-            double expected = _groups.TryGetValue(kind.Key, out GroupSums? sums) ? SteadyCounts(sums.ToGroup()) : 0;
+            double expected = Expected(kind.First());
             if (expected >= plausibleCounts) foreach (ShotInfo shot in kind) Cut("missing trigger", shot.Number);
             else KeepEmpty([.. kind], expected);
         }

@@ -21,4 +21,8 @@ public enum ShotKind
 /// <param name="AblationMonitor">V.</param>
 /// <param name="DetuningReadback">Laser detuning as read back, Hz.</param>
 public readonly record struct ShotInfo(
-    long Number, ShotKind Kind, string Condition, double ProbeMonitor, double AblationMonitor, double DetuningReadback);
+    long Number, ShotKind Kind, string Condition, double ProbeMonitor, double AblationMonitor, double DetuningReadback)
+{
+    /// <summary>Whether an earlier shot of the file has the same number.</summary>
+    public bool Repeated { get; init; }
+}

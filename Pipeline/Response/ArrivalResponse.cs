@@ -19,7 +19,11 @@ public sealed class ArrivalResponse : IResponseMode
                 "compare folded predictions, or measure a Doppler scan");
         var cells = new ArrivalCells(setup, flight, axis);
         var columns = new double[grid.Cells][];
-        for (int c = 0; c < grid.Cells; c++) columns[c] = cells.Column(grid.Edge(c), grid.Edge(c + 1));
+        for (int c = 0; c < grid.Cells; c++)
+        {
+            columns[c] = cells.Column(grid.Edge(c), grid.Edge(c + 1));
+            Coupling.Apply(columns[c], axis, setup.Detector.CouplingTime.Value);
+        }
         return new ResponseMatrix(axis, grid, columns);
     }
 }

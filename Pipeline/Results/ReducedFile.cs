@@ -35,6 +35,7 @@ static class ReducedFile
         tree.Dataset("block_shots", group.BlockShots);
         tree.Dataset("block_probe_monitor_v", group.BlockProbeMonitor);
         tree.Dataset("block_ablation_monitor_v", group.BlockAblationMonitor);
+        tree.Dataset("baseline_variance_v2", new[] { group.BaselineVariance });
         tree.Dataset("full_sum", group.FullSum);
     }
 
@@ -79,6 +80,7 @@ static class ReducedFile
             BlockSums = [.. Enumerable.Range(0, shots.Length).Select(b => sums[(b * bins)..((b + 1) * bins)])],
             BlockProbeMonitor = file.ReadNumbers($"{at}/block_probe_monitor_v"),
             BlockAblationMonitor = file.ReadNumbers($"{at}/block_ablation_monitor_v"),
+            BaselineVariance = file.ReadNumbers($"{at}/baseline_variance_v2")[0],
             FullSum = file.ReadNumbers($"{at}/full_sum"),
         };
     }
