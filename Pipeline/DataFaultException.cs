@@ -1,7 +1,7 @@
 namespace Pipeline;
 
 /// <summary>Unusable data or configuration. Caught once a command, and once a run by the night's loop.</summary>
-public sealed class DataFaultException(Fault fault) : Exception(fault.ToString())
+public class DataFaultException(Fault fault) : Exception(fault.ToString())
 {
     /// <summary>A fault given by its four parts.</summary>
     public DataFaultException(string where, string found, string expected, string remedy)

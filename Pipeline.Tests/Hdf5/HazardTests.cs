@@ -17,14 +17,16 @@ public sealed class HazardTests : IDisposable
     [InlineData("latest", 40)]
     public void SoftLinks_AreFollowedByTheLibraryAndRefusedElse(string version, int links)
     {
-        Python.Write(FilePath, $"for k in range({links}): f['g%d' % k] = [k, 2]\nf['in/side'] = h5py.SoftLink('/g1')\nf['in/near'] = h5py.SoftLink('side')\nf['loop'] = h5py.SoftLink('/pool')\nf['pool'] = h5py.SoftLink('/loop')\nf['gone'] = h5py.SoftLink('/nothing')",
+        Python.Write(FilePath, $"for k in range({links}): f['g%d' % k] = [k, 2]\nf['in/side'] = h5py.SoftLink('/g1')\nf['in/near'] = h5py.SoftLink('side')\nf['loop'] = h5py.SoftLink('/pool')\nf['pool'] = h5py.SoftLink('/loop')\nf['gone'] = h5py.SoftLink('/nothing')\nf['far/text'] = ['a', 'b']\nf['far'].attrs['who'] = 'me'\nf['far/name'] = h5py.SoftLink('/far/text')",
             options: $", libver='{version}'");
         Assert.Contains("links to other places", Managed().Found, StringComparison.Ordinal);
         using IHdf5File file = Library();
         Assert.Equal([1.0, 2.0], file.ReadNumbers("in/side"));
         Assert.Equal([1.0, 2.0], file.ReadNumbers("in/near"));
-        Assert.Contains("links on the way", Assert.Throws<DataFaultException>(() => file.ReadNumbers("loop")).Fault.Found, StringComparison.Ordinal);
-        Assert.Contains("no such dataset", Assert.Throws<DataFaultException>(() => file.ReadNumbers("gone")).Fault.Found, StringComparison.Ordinal);
+        Assert.Equal(["a", "b"], file.ReadLabels("far/name"));
+        Assert.Equal("me", file.ReadTextAttribute("far", "who"));
+        Assert.Contains("links on the way", Assert.ThrowsAny<DataFaultException>(() => file.ReadNumbers("loop")).Fault.Found, StringComparison.Ordinal);
+        Assert.Contains("no such dataset", Assert.ThrowsAny<DataFaultException>(() => file.ReadNumbers("gone")).Fault.Found, StringComparison.Ordinal);
         Assert.Contains(file.Describe(200), n => n is { Path: "loop", Dimensions: null });
     }
 
@@ -38,9 +40,9 @@ public sealed class HazardTests : IDisposable
         Python.Write(FilePath, $"f['g'] = [1]\nf['x'] = {link}", options: $", libver='{version}'");
         Assert.Contains("links to other places", Managed().Found, StringComparison.Ordinal);
         using (IHdf5File file = Library())
-            Assert.Contains("a link into another file", Assert.Throws<DataFaultException>(() => file.ReadNumbers("x")).Fault.Found, StringComparison.Ordinal);
+            Assert.Contains("a link into another file", Assert.ThrowsAny<DataFaultException>(() => file.ReadNumbers("x")).Fault.Found, StringComparison.Ordinal);
         using IHdf5File allowed = Hdf5Files.Open(FilePath, new Hdf5Access(Hdf5Reader.Library, ExternalLinks: true));
-        if (link.Contains("..", StringComparison.Ordinal)) Assert.Throws<DataFaultException>(() => allowed.ReadNumbers("x"));
+        if (link.Contains("..", StringComparison.Ordinal)) Assert.ThrowsAny<DataFaultException>(() => allowed.ReadNumbers("x"));
         else Assert.Equal([3.0, 4.0], allowed.ReadNumbers("x"));
     }
 
@@ -53,13 +55,13 @@ public sealed class HazardTests : IDisposable
         foreach (string name in (string[])["raw", "virtual"])
         {
             using IHdf5File file = Library();
-            Assert.Contains("other file", Assert.Throws<DataFaultException>(() => file.Shape(name)).Fault.Found.Replace("another", "other", StringComparison.Ordinal), StringComparison.Ordinal);
+            Assert.Contains("other file", Assert.ThrowsAny<DataFaultException>(() => file.Shape(name)).Fault.Found.Replace("another", "other", StringComparison.Ordinal), StringComparison.Ordinal);
         }
         using (IHdf5File allowed = Hdf5Files.Open(FilePath, new Hdf5Access(Hdf5Reader.Library, ExternalLinks: true))) Assert.Equal([0.0, 0], allowed.ReadNumbers("raw")[..2]);
         Assert.Contains("links to other places", Managed().Found, StringComparison.Ordinal);
         Python.Write(FilePath, "del f['raw']\nf.copy('virtual', h5py.File(path + '2', 'w'))", "a");
         using IHdf5File managed = Hdf5Files.Open(FilePath + "2", new Hdf5Access(Hdf5Reader.Managed));
-        Assert.Contains("a virtual dataset", Assert.Throws<DataFaultException>(() => managed.Shape("virtual")).Fault.Found, StringComparison.Ordinal);
+        Assert.Contains("a virtual dataset", Assert.ThrowsAny<DataFaultException>(() => managed.Shape("virtual")).Fault.Found, StringComparison.Ordinal);
     }
 
     /// <summary>A number of 12 bits at bit 4 of four bytes.</summary>
@@ -124,7 +126,7 @@ public sealed class HazardTests : IDisposable
         foreach (Hdf5Reader reader in Readers)
         {
             using IHdf5File file = Hdf5Files.Open(FilePath, new Hdf5Access(reader));
-            foreach (string name in (string[])["u4", "i8", "u8"]) Assert.Throws<DataFaultException>(() => file.ReadIntegers(name, 0, 1));
+            foreach (string name in (string[])["u4", "i8", "u8"]) Assert.ThrowsAny<DataFaultException>(() => file.ReadIntegers(name, 0, 1));
         }
     }
 
@@ -134,7 +136,7 @@ public sealed class HazardTests : IDisposable
     {
         Python.Write(FilePath, "f.create_dataset('x', (50, 100), 'i2', chunks=(10, 100))\nf.create_dataset('part', (50, 100), 'i2', chunks=(10, 100))[0:10] = 1");
         using IHdf5File file = Library();
-        Assert.Contains("ever written", Assert.Throws<DataFaultException>(() => file.Shape("x")).Fault.Found, StringComparison.Ordinal);
+        Assert.Contains("ever written", Assert.ThrowsAny<DataFaultException>(() => file.ReadIntegers("x", 0, 50)).Fault.Found, StringComparison.Ordinal);
         Assert.Equal(1000, file.ReadIntegers("part", 0, 50).Sum());
     }
 
@@ -149,7 +151,7 @@ public sealed class HazardTests : IDisposable
         {
             long before = GC.GetTotalAllocatedBytes();
             using IHdf5File file = Hdf5Files.Open(FilePath, new Hdf5Access(reader));
-            Assert.Contains("declared bytes", Assert.Throws<DataFaultException>(() => file.Shape("x")).Fault.Found, StringComparison.Ordinal);
+            Assert.Contains("declared bytes", Assert.ThrowsAny<DataFaultException>(() => file.Shape("x")).Fault.Found, StringComparison.Ordinal);
             Assert.InRange(GC.GetTotalAllocatedBytes() - before, 0, 100_000_000);
         }
     }
@@ -162,9 +164,8 @@ public sealed class HazardTests : IDisposable
         {
             using IHdf5File file = Hdf5Files.Open(FilePath, new Hdf5Access(reader));
             Assert.Equal([1.0, 2.0], file.ReadNumbers(string.Join('/', Enumerable.Range(0, 40).Select(k => $"d{k}")) + "/x"));
-            Assert.Throws<DataFaultException>(() => file.ReadNumbers(string.Join('/', Enumerable.Range(0, 200).Select(k => $"e{k}")) + "/x"));
-            if (reader == Hdf5Reader.Library) Assert.Empty(file.ReadNumbers("none"));
-            else Assert.Throws<DataFaultException>(() => file.ReadNumbers("none"));
+            Assert.ThrowsAny<DataFaultException>(() => file.ReadNumbers(string.Join('/', Enumerable.Range(0, 200).Select(k => $"e{k}")) + "/x"));
+            Assert.ThrowsAny<DataFaultException>(() => file.ReadNumbers("none"));
             Assert.NotEmpty(file.Describe(4000));
         }
     }
@@ -175,7 +176,7 @@ public sealed class HazardTests : IDisposable
         Skip.IfNot(Hdf5Files.HasLibrary, "no HDF5 C library on this machine");
         Python.Write(FilePath, "f['x'] = [1, 2]\nf.flush()\nimport subprocess, shutil\nshutil.copy(path, path + '.live')\nf.close()\nf = h5py.File(path, 'a', libver='latest')\nf['y'] = [1]\nf.swmr_mode = True\nf.flush()\nshutil.copy(path, path + '.live')", options: ", libver='latest'");
         foreach (Hdf5Reader reader in Readers)
-            Assert.Contains("open for writing", Assert.Throws<DataFaultException>(() => Hdf5Files.Open(FilePath + ".live", new Hdf5Access(reader))).Fault.Found, StringComparison.Ordinal);
+            Assert.Contains("open for writing", Assert.ThrowsAny<DataFaultException>(() => Hdf5Files.Open(FilePath + ".live", new Hdf5Access(reader))).Fault.Found, StringComparison.Ordinal);
     }
 
     static Hdf5Reader[] Readers => Hdf5Files.HasLibrary ? [Hdf5Reader.Library, Hdf5Reader.Managed] : [Hdf5Reader.Managed];
@@ -186,5 +187,5 @@ public sealed class HazardTests : IDisposable
         return Hdf5Files.Open(FilePath, new Hdf5Access(Hdf5Reader.Library));
     }
 
-    Fault Managed() => Assert.Throws<DataFaultException>(() => Hdf5Files.Open(FilePath, new Hdf5Access(Hdf5Reader.Managed))).Fault;
+    Fault Managed() => Assert.ThrowsAny<DataFaultException>(() => Hdf5Files.Open(FilePath, new Hdf5Access(Hdf5Reader.Managed))).Fault;
 }

@@ -1,6 +1,7 @@
 using Pipeline.Analysis;
 using Pipeline.Apparatus;
 using Pipeline.Configuration;
+using Pipeline.Hdf5;
 using Pipeline.Ingest;
 using Pipeline.Reduction;
 using Pipeline.Tests.Support;
@@ -48,10 +49,30 @@ public class LayoutTests
         Assert.InRange(fit.Mean.Value, mean - 3 * fit.Mean.Total, mean + 3 * fit.Mean.Total);
     }
 
-    static BinnedRun Reduce(string folder, string file, string layout)
+    [SkippableTheory]
+    [InlineData("free-L1", "hdf5-matrix")]
+    [InlineData("free-L2", "hdf5-groups")]
+    [InlineData("free-L3", "hdf5-classes")]
+    [InlineData("free-L7", "hdf5-stamps")]
+    [InlineData("model-L1", "hdf5-matrix")]
+    [InlineData("analog-L1", "hdf5-matrix")]
+    public void Reduce_BothHdf5Readers_GiveTheSameBitForBit(string folder, string layout)
+    {
+        Skip.IfNot(Hdf5Files.HasLibrary, "no HDF5 C library on this machine");
+        BinnedRun one = Reduce(folder, "arrival.h5", layout, Hdf5Reader.Library), other = Reduce(folder, "arrival.h5", layout, Hdf5Reader.Managed);
+        Assert.Equal(one.Groups.Count, other.Groups.Count);
+        foreach ((ShotGroup a, ShotGroup b) in one.Groups.Zip(other.Groups))
+        {
+            Assert.Equal((a.Condition, a.Kind, a.Shots), (b.Condition, b.Kind, b.Shots));
+            Assert.Equal(a.FullSum, b.FullSum);
+            Assert.Equal(a.BlockProbeMonitor, b.BlockProbeMonitor);
+        }
+    }
+
+    static BinnedRun Reduce(string folder, string file, string layout, Hdf5Reader reader = Hdf5Reader.Best)
     {
         var lab = new LabFile(folder);
-        using IShotSource source = ShotFiles.Open(Path.Combine(lab.Folder, file), Shipped.ShotLayouts[layout], DetectorKind.Counting);
+        using IShotSource source = ShotFiles.Open(Path.Combine(lab.Folder, file), Shipped.ShotLayouts[layout], lab.Setup().Detector.Kind, new Hdf5Access(reader));
         BinnedRun run = Reducer.Reduce(source.Shape, source.Shots, source.ReadBlocks(), lab.Setup().Detector, LabFile.Settings().Reduction);
         return run;
     }

@@ -43,7 +43,7 @@ public class CouplingTests
         foreach (double t in (double[])[9e-3, 13e-3, 20e-3, 60e-3])
         {
             int bin = Enumerable.Range(0, axis.Bins).First(i => axis.EdgeSeconds(i + 1) > t);
-            double expected = Mean(axis, bin, time => Pulse(time) - Enumerable.Range(0, 4000).Sum(k => 10e-6 * Pulse(time - 10e-6 * (k + 0.5)) * Math.Exp(-10e-6 * (k + 0.5) / T) / T));
+            double expected = Mean(axis, bin, time => Pulse(time) - Enumerable.Range(0, 8000).Sum(k => 10e-6 * Pulse(time - 10e-6 * (k + 0.5)) * Math.Exp(-10e-6 * (k + 0.5) / T) / T));
             Assert.Equal(expected, signal[bin] / axis.WidthSeconds(bin), 1e-4);
         }
     }

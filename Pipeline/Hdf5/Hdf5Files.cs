@@ -32,10 +32,13 @@ public static class Hdf5Files
     {
         access ??= Hdf5Access.Usual;
         CheckSuperblock(path);
+        using (FileStream file = File.OpenRead(path))
+            if (HeapScan.FindsDamage(file))
+                throw new DataFaultException(Path.GetFileName(path), "a damaged heap of strings", "an undamaged HDF5 file", "copy the file again, or record it again");
         LoadedLibrary? library = access.Reader == Hdf5Reader.Managed ? null : LibraryLoader.Current;
         if (library is null && access.Reader == Hdf5Reader.Library)
             throw new DataFaultException(Path.GetFileName(path), "no HDF5 C library of version 1.10 or later on this machine", "one", "install it (on Debian the package libhdf5-103-1), or let the managed reader read");
-        return library is not null ? new NativeHdf5File(library, path, access.ExternalLinks) : new ManagedHdf5File(path);
+        return library is null ? new ManagedHdf5File(path, alone: true) : new CheckedHdf5File(path, library, access.ExternalLinks);
     }
 
     /// <summary>Whether the machine has the HDF5 C library.</summary>

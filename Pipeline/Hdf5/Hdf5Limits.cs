@@ -16,4 +16,8 @@ static class Hdf5Limits
             throw new DataFaultException($"{name}, {path}", FormattableString.Invariant($"{bytes:G3} declared bytes in a file of {length}"), "data that the file can hold",
                 "the file is damaged or was never filled: record it again");
     }
+
+    /// <summary>A chunk is read as a whole: one that no file of this length can hold is refused before memory is asked for it.</summary>
+    public static void CheckChunk(string name, string path, IEnumerable<ulong> chunk, double elementBytes, long length) =>
+        CheckStorage(name, $"{path}, a chunk", chunk.Aggregate(elementBytes, (a, d) => a * d), false, length);
 }

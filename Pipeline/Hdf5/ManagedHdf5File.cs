@@ -14,22 +14,37 @@ sealed class ManagedHdf5File : IHdf5File
     const string UseLibrary = "install the HDF5 C library (on Debian the package libhdf5-103-1), which reads it, or write the file without";
     readonly string _path, _name;
     readonly NativeFile _file;
-    readonly Hazards _hazards;
-    readonly Dictionary<string, IH5Dataset> _datasets = new(StringComparer.Ordinal);
+        readonly Dictionary<string, IH5Dataset> _datasets = new(StringComparer.Ordinal);
 
     static ManagedHdf5File() => H5Filter.Register(new ManagedLzf());
 
-    public ManagedHdf5File(string path)
+    /// <param name="path">The file.</param>
+    /// <param name="alone">Whether no other library reads: then files that this one may misread are refused as a whole. Else the caller
+    /// looks at <see cref="Hazards"/>.</param>
+    public ManagedHdf5File(string path, bool alone)
     {
         (_path, _name) = (path, Path.GetFileName(path));
-        using (FileStream file = File.OpenRead(path)) _hazards = FileScan.Of(file);
-        if (_hazards.HasFlag(Hazards.Links)) throw Refuse("/", "links to other places or files", "a file without them: a loop of them would end the program", UseLibrary);
-        if (_hazards.HasFlag(Hazards.PartialIntegers)) throw Refuse("/", "integers that fill only part of their bytes", "whole bytes", UseLibrary);
-        if (_hazards.HasFlag(Hazards.SkippedFilters)) throw Refuse("/", "chunks stored without one of their filters", "all chunks stored in one way", UseLibrary);
+        using (FileStream file = File.OpenRead(path)) Hazards = FileScan.Of(file);
+        if (alone && Hazards.HasFlag(Hazards.Links)) throw Beyond("/", "links to other places or files", "a file without them: a loop of them would end the program");
+        if (alone && Hazards.HasFlag(Hazards.PartialIntegers)) throw Beyond("/", "integers that fill only part of their bytes", "whole bytes");
+        if (alone && Hazards.HasFlag(Hazards.SkippedFilters)) throw Beyond("/", "chunks stored without one of their filters", "all chunks stored in one way");
         _file = Guarded("/", () => H5File.Open(_path, FileMode.Open, FileAccess.Read, FileShare.Read));
     }
 
     public string Reader => "PureHDF 2.2.0";
+
+    /// <summary>What the library would misread, or fall over.</summary>
+    public Hazards Hazards { get; }
+
+    /// <summary>Whether the labels are strings of variable length, or a field of these.</summary>
+    public bool IsVariableText(string path, string? field) => Guarded(path, () =>
+    {
+        IH5DataType? type = Dataset(path).Type;
+        if (field is not null) type = type.Class == H5DataTypeClass.Compound ? type.Compound.Members.FirstOrDefault(m => m.Name == field)?.Type : null;
+        return type?.Class == H5DataTypeClass.VariableLength;
+    });
+
+    public bool IsVariableText(string path, string attribute, bool ofAttribute) => ofAttribute && Guarded(path, () => Attribute(path, attribute).Type.Class == H5DataTypeClass.VariableLength);
 
     public void Dispose() => _file.Dispose();
 
@@ -43,11 +58,11 @@ sealed class ManagedHdf5File : IHdf5File
             ulong[] dimensions = dataset.Space.Dimensions, most = dataset.Space.MaxDimensions;
             for (int d = 1; d < dimensions.Length; d++)
                 if (most[d] != dimensions[d])
-                    throw Refuse(path, $"dimension {d} that may grow", "only the first dimension unlimited",
-                        UseLibrary);
-            if (dataset.Layout.Class == H5DataLayoutClass.VirtualStorage) throw Refuse(path, "a virtual dataset", "data in this file", UseLibrary);
+                    throw Beyond(path, $"dimension {d} that may grow", "only the first dimension unlimited");
+            if (dataset.Layout.Class == H5DataLayoutClass.VirtualStorage) throw Beyond(path, "a virtual dataset", "data in this file");
             ulong[]? chunks = dataset.Layout.Class == H5DataLayoutClass.Chunked ? dataset.Layout.Chunks : null;
             CheckStorage(path, dataset, dimensions, chunks is null);
+            if (chunks is not null) Hdf5Limits.CheckChunk(_name, path, chunks.Take(dimensions.Length), dataset.Type.Size, new FileInfo(_path).Length);
             return new DatasetShape([.. dimensions.Select(d => (long)d)], KindOf(dataset), (int)Math.Clamp(chunks?[0] ?? 1, 1, 1 << 20));
         });
     }
@@ -108,7 +123,8 @@ sealed class ManagedHdf5File : IHdf5File
     object[] Column(string path, IH5Dataset dataset, string field)
     {
         if (dataset.Type.Class != H5DataTypeClass.Compound) throw Refuse(path, Hdf5Walk.Word(dataset.Type), "a table with named fields", "name the right dataset in the layout");
-        if (_hazards.HasFlag(Hazards.BigEndian)) throw Refuse(path, "a table in a file with big-endian numbers", "numbers with the least significant byte first", UseLibrary);
+        bool text = dataset.Type.Compound.Members.Any(m => m.Name == field && m.Type.Class is H5DataTypeClass.String or H5DataTypeClass.VariableLength);
+        if (Hazards.HasFlag(Hazards.BigEndian) && !text) throw Beyond(path, "a table in a file with big-endian numbers", "numbers with the least significant byte first");
         CheckRank(path, dataset, 1);
         CheckStorage(path, dataset, dataset.Space.Dimensions, false);
         if (dataset.Type.Compound.Members.All(m => m.Name != field))
@@ -199,12 +215,15 @@ sealed class ManagedHdf5File : IHdf5File
             IH5Object at = _file;
             foreach (string part in parts)
             {
-                if (at is not IH5Group group || !group.LinkExists(part)) return null;
+                // among links that may form a loop only those are asked for that the other library has found
+                if (at is not IH5Group group || (!Hazards.HasFlag(Hazards.Links) && !group.LinkExists(part))) return null;
                 at = group.Get(part);
             }
             return at;
         });
     }
+
+    ManagedLimitException Beyond(string path, string found, string expected) => new(new Fault($"{_name}, {path}", found, expected, UseLibrary));
 
     DataFaultException Missing(string path) => Refuse(path, "no such dataset", "a dataset of this path", "name the right path in the layout");
 
@@ -216,7 +235,7 @@ sealed class ManagedHdf5File : IHdf5File
         catch (DataFaultException) { throw; }
         catch (Exception e) when (ManagedHolder.IsByteOrder(e))
         {
-            throw Refuse(path, "big-endian numbers", "numbers with the least significant byte first", UseLibrary);
+            throw Beyond(path, "big-endian numbers", "numbers with the least significant byte first");
         }
         catch (Exception e)
         {

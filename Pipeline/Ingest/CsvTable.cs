@@ -71,7 +71,7 @@ sealed class CsvTable : IDisposable
     {
         ReadOnlySpan<byte> field = _reader.GetSpan(column);
         if (TryParse(field, out double value) && double.IsFinite(value)) return value;
-        throw new DataFaultException($"{Where}, column \"{Headers[column]}\"", field.Length == 0 ? "an empty field" : $"\"{_reader.GetString(column)}\"",
+        throw new DataFaultException($"{Where}, column \"{Headers[column]}\"", field.Length == 0 ? "an empty field" : $"\"{(field.Length > 60 ? Encoding.UTF8.GetString(field[..60]) + "..." : _reader.GetString(column))}\"",
             $"a finite number with \"{_dialect.Decimal}\" before its decimals", "correct the field or export the file again");
     }
 

@@ -35,7 +35,6 @@ static unsafe partial class Declarations
     [LibraryImport(Name)] public static partial long H5Dget_create_plist(long dataset);
     [LibraryImport(Name)] public static partial ulong H5Dget_storage_size(long dataset);
     [LibraryImport(Name)] public static partial int H5Dread(long dataset, long memoryType, long memorySpace, long fileSpace, long transfer, void* buffer);
-    [LibraryImport(Name)] public static partial int H5Dvlen_reclaim(long type, long space, long transfer, void* buffer);
 
     [LibraryImport(Name)] public static partial int H5Pclose(long list);
     [LibraryImport(Name)] public static partial int H5Pget_layout(long list);
@@ -54,8 +53,6 @@ static unsafe partial class Declarations
     [LibraryImport(Name)] public static partial int H5Tget_sign(long type);
     [LibraryImport(Name)] public static partial int H5Tget_order(long type);
     [LibraryImport(Name)] public static partial int H5Tget_cset(long type);
-    [LibraryImport(Name)] public static partial int H5Tset_cset(long type, int set);
-    [LibraryImport(Name)] public static partial int H5Tset_size(long type, nuint size);
     [LibraryImport(Name)] public static partial int H5Tis_variable_str(long type);
     [LibraryImport(Name)] public static partial int H5Tget_nmembers(long type);
     [LibraryImport(Name)] public static partial byte* H5Tget_member_name(long type, uint member);

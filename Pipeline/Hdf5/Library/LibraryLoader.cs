@@ -36,7 +36,7 @@ static unsafe class LibraryLoader
         // from 1.12 on the plain name is only a macro
         nint linkInfo = NativeLibrary.TryGetExport(handle, "H5Lget_info1", out nint one) ? one : NativeLibrary.GetExport(handle, "H5Lget_info");
         return new LoadedLibrary(string.Create(CultureInfo.InvariantCulture, $"HDF5 library {major}.{minor}.{release}"), Type("H5T_NATIVE_INT32_g"), Type("H5T_NATIVE_INT64_g"),
-            Type("H5T_NATIVE_UINT64_g"), Type("H5T_NATIVE_DOUBLE_g"), Type("H5T_C_S1_g"), linkInfo);
+            Type("H5T_NATIVE_UINT64_g"), Type("H5T_NATIVE_DOUBLE_g"), linkInfo);
     }
 
     /// <summary>What the library says of its last failure, the innermost cause; the record is cleared.</summary>
@@ -63,9 +63,8 @@ static unsafe class LibraryLoader
 /// <param name="Int64">Type of memory.</param>
 /// <param name="UInt64">Type of memory.</param>
 /// <param name="Double">Type of memory.</param>
-/// <param name="Text">To be copied.</param>
 /// <param name="LinkInfoFunction">H5Lget_info.</param>
-sealed unsafe record LoadedLibrary(string Version, long Int32, long Int64, long UInt64, long Double, long Text, nint LinkInfoFunction)
+sealed unsafe record LoadedLibrary(string Version, long Int32, long Int64, long UInt64, long Double, nint LinkInfoFunction)
 {
     /// <summary>What a link is: 0 hard, 1 soft, 64 external.</summary>
     public LinkInfo? Link(long location, string name)

@@ -45,8 +45,7 @@ sealed unsafe class NativeHdf5File : IHdf5File
         using NativeId type = NativeId.Type(H5Dget_type(dataset));
         using var list = new NativeId(H5Dget_create_plist(dataset), H5Pclose);
         int layout = LibraryFailure.Check(H5Pget_layout(list));
-        if (!_externalLinks && (layout == Virtual || H5Pget_external_count(list) > 0))
-            throw Refuse(path, layout == Virtual ? "a virtual dataset, put together from other files" : "data in another file", "data in this file", "copy the data into the file, or set external_links = true in the layout");
+        CheckInside(path, list, layout);
         double bytes = dimensions.Aggregate((double)H5Tget_size(type), (a, d) => a * d);
         long length = new FileInfo(_path).Length;
         if (layout != Virtual && H5Pget_external_count(list) == 0) Hdf5Limits.CheckStorage(_name, path, bytes, layout == Contiguous, length);
@@ -55,6 +54,7 @@ sealed unsafe class NativeHdf5File : IHdf5File
         ulong[] chunk = new ulong[Math.Max(1, dimensions.Length)];
         chunk[0] = 1;
         if (layout == 2) fixed (ulong* at = chunk) LibraryFailure.Check(H5Pget_chunk(list, chunk.Length, at));
+        if (layout == 2) Hdf5Limits.CheckChunk(_name, path, chunk, H5Tget_size(type), length);
         return new DatasetShape([.. dimensions.Select(d => (long)d)], NativeValues.KindOf(type), (int)Math.Clamp(chunk[0], 1, 1 << 20));
     });
 
@@ -84,16 +84,15 @@ sealed unsafe class NativeHdf5File : IHdf5File
         NativeId dataset = Dataset(path);
         long count = Single(path, dataset);
         using NativeId type = Element(path, dataset, field);
-        using NativeId space = NativeId.Space(H5Dget_space(dataset));
-        return NativeValues.Labels(_library, type, field, count, space, (memory, at) => LibraryFailure.Check(H5Dread(dataset, memory, 0, 0, 0, (void*)at)));
+        return NativeValues.Labels(_library, type, field, count, (memory, at) => LibraryFailure.Check(H5Dread(dataset, memory, 0, 0, 0, (void*)at)));
     });
 
-    public double[] ReadNumberAttributes(string path, string attribute) => Guarded($"{path}, attribute {attribute}", () => OfAttribute(path, attribute, (found, type, space, count) =>
+    public double[] ReadNumberAttributes(string path, string attribute) => Guarded($"{path}, attribute {attribute}", () => OfAttribute(path, attribute, (found, type, count) =>
         NativeValues.KindOf(type) is ElementKind.Integer or ElementKind.Real ? NativeValues.Numbers(_library, type, null, count, (memory, at) => LibraryFailure.Check(H5Aread(found, memory, (void*)at)))
             : throw Refuse($"{path}, attribute {attribute}", NativeValues.Word(type), "a number", "state the value in the layout")));
 
-    public string[] ReadTextAttributes(string path, string attribute) => Guarded($"{path}, attribute {attribute}", () => OfAttribute(path, attribute, (found, type, space, count) =>
-        NativeValues.Labels(_library, type, null, count, space, (memory, at) => LibraryFailure.Check(H5Aread(found, memory, (void*)at)))));
+    public string[] ReadTextAttributes(string path, string attribute) => Guarded($"{path}, attribute {attribute}", () => OfAttribute(path, attribute, (found, type, count) =>
+        NativeValues.Labels(_library, type, null, count, (memory, at) => LibraryFailure.Check(H5Aread(found, memory, (void*)at)))));
 
     public IReadOnlyList<string> Groups(string path) => Guarded(path, () =>
     {
@@ -106,7 +105,25 @@ sealed unsafe class NativeHdf5File : IHdf5File
         }).ToArray();
     });
 
+    /// <summary>The path by hard links of this file alone; null where it leads into another file.</summary>
+    public string? HardPath(string path) => Guarded(path, () =>
+    {
+        using NativeId found = _links.Open(path, out string? hard) ?? throw Missing(path);
+        if (H5Iget_type(found) == NativeLinks.DatasetType)
+        {
+            using var list = new NativeId(H5Dget_create_plist(found), H5Pclose);
+            CheckInside(path, list, H5Pget_layout(list));
+        }
+        return hard;
+    });
+
     public IReadOnlyList<Hdf5Node> Describe(int most) => Guarded("/", () => new NativeWalk(_library, _links).From(most));
+
+    void CheckInside(string path, NativeId list, int layout)
+    {
+        if (!_externalLinks && (layout == Virtual || H5Pget_external_count(list) > 0))
+            throw Refuse(path, layout == Virtual ? "a virtual dataset, put together from other files" : "data in another file", "data in this file", "copy the data into the file, or set external_links = true in the layout");
+    }
 
     internal static ulong[] Dimensions(long dataset)
     {
@@ -123,7 +140,7 @@ sealed unsafe class NativeHdf5File : IHdf5File
         return dimensions;
     }
 
-    T OfAttribute<T>(string path, string attribute, Func<NativeId, NativeId, NativeId, long, T> read)
+    T OfAttribute<T>(string path, string attribute, Func<NativeId, NativeId, long, T> read)
     {
         using NativeId holder = _links.Open(path) ?? throw Missing(path);
         if (LibraryFailure.Check(H5Aexists(holder, attribute)) == 0)
@@ -131,7 +148,7 @@ sealed unsafe class NativeHdf5File : IHdf5File
         using var found = new NativeId(H5Aopen(holder, attribute, 0), H5Aclose);
         using NativeId type = NativeId.Type(H5Aget_type(found)), space = NativeId.Space(H5Aget_space(found));
         long count = OfSpace(space).Aggregate(1L, (a, d) => checked(a * (long)d));
-        return read(found, type, space, count);
+        return read(found, type, count);
     }
 
     /// <summary>Rows along the first dimension, whole in all others.</summary>

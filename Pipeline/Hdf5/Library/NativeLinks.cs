@@ -13,8 +13,13 @@ sealed unsafe class NativeLinks(LoadedLibrary library, long file, string name, b
     const int MostSteps = 64, Hard = 0, Soft = 1, External = 64;
 
     /// <summary>The group or dataset at a path; null where there is none.</summary>
-    public NativeId? Open(string path)
+    public NativeId? Open(string path) => Open(path, out _);
+
+    /// <param name="path">Of the thing.</param>
+    /// <param name="hard">The same by hard links of this file alone; null where there is none.</param>
+    public NativeId? Open(string path, out string? hard)
     {
+        hard = "";
         var rest = new LinkedList<string>(path.Split('/', StringSplitOptions.RemoveEmptyEntries));
         NativeId at = Root();
         try
@@ -34,10 +39,15 @@ sealed unsafe class NativeLinks(LoadedLibrary library, long file, string name, b
                 {
                     string target = Target(at, first.Value, link);
                     foreach (string part in target.Split('/', StringSplitOptions.RemoveEmptyEntries).Reverse()) rest.AddFirst(part);
-                    if (target.StartsWith('/')) Replace(ref at, Root());
+                    if (target.StartsWith('/'))
+                    {
+                        Replace(ref at, Root());
+                        if (hard is not null) hard = "";
+                    }
                     continue;
                 }
                 if (link.Type != Hard && !(link.Type == External && externalLinks)) throw Refuse(path, link.Type, Target(at, first.Value, link));
+                hard = link.Type == External || hard is null ? null : $"{hard}/{first.Value}";
                 Replace(ref at, NativeId.Thing(H5Oopen(at, first.Value, 0)));
             }
             return at;

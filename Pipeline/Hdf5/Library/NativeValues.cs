@@ -61,9 +61,10 @@ static unsafe class NativeValues
     }
 
     /// <summary>Labels: strings, names of an enumeration, or numbers as invariant text.</summary>
-    public static string[] Labels(LoadedLibrary library, long type, string? field, long count, long space, Action<long, nint> read) => H5Tget_class(type) switch
+    public static string[] Labels(LoadedLibrary library, long type, string? field, long count, Action<long, nint> read) => H5Tget_class(type) switch
     {
-        String when LibraryFailure.Check(H5Tis_variable_str(type)) > 0 => Variable(library, type, field, count, space, read),
+        // one wrong reference and the library ends the process: CheckedHdf5File reads these by the other library
+        String when LibraryFailure.Check(H5Tis_variable_str(type)) > 0 => throw new LibraryFailure("strings of variable length; write them with a fixed length"),
         String => Fixed(type, field, count, read),
         Enumeration => Names(type, field, count, read),
         Integer or Real => [.. Numbers(library, type, field, count, read).Select(v => v.ToString(CultureInfo.InvariantCulture))],
@@ -84,23 +85,6 @@ static unsafe class NativeValues
     {
         int end = text.IndexOf('\0', StringComparison.Ordinal);
         return (end < 0 ? text : text[..end]).TrimEnd(' ');
-    }
-
-    static string[] Variable(LoadedLibrary library, long type, string? field, long count, long space, Action<long, nint> read)
-    {
-        using NativeId memory = NativeId.Type(H5Tcopy(library.Text));
-        LibraryFailure.Check(H5Tset_size(memory, nuint.MaxValue));
-        LibraryFailure.Check(H5Tset_cset(memory, H5Tget_cset(type)));
-        using NativeId? wrapped = field is null ? null : Wrap(field, memory, (nuint)sizeof(nint));
-        var pointers = new nint[count];
-        if (count == 0) return [];
-        fixed (nint* at = pointers)
-        {
-            read(wrapped?.Value ?? memory.Value, (nint)at);
-            string[] labels = [.. pointers.Select(p => (Marshal.PtrToStringUTF8(p) ?? "").TrimEnd(' '))];
-            _ = H5Dvlen_reclaim(wrapped?.Value ?? memory.Value, space, 0, at);
-            return labels;
-        }
     }
 
     static string[] Names(long type, string? field, long count, Action<long, nint> read)

@@ -74,7 +74,7 @@ sealed unsafe class NativeWalk(LoadedLibrary library, NativeLinks links)
             using NativeId type = NativeId.Type(H5Aget_type(attribute)), space = NativeId.Space(H5Aget_space(attribute));
             int rank = H5Sget_simple_extent_ndims(space);
             if (rank != 0) return string.Create(CultureInfo.InvariantCulture, $"({NativeValues.Word(type)}, {rank} {(rank == 1 ? "dimension" : "dimensions")})");
-            return NativeValues.Labels(library, type, null, 1, space, (memory, at) => LibraryFailure.Check(H5Aread(attribute, memory, (void*)at)))[0];
+            return NativeValues.Labels(library, type, null, 1, (memory, at) => LibraryFailure.Check(H5Aread(attribute, memory, (void*)at)))[0];
         }
         catch (LibraryFailure)
         {
