@@ -32,6 +32,35 @@ public sealed class ConfigurationTests : IDisposable
         Assert.Equal(2, lab.Predictions.Count);
     }
 
+    /// <summary>One file with two detectors gives two runs, each with its own efficiency.</summary>
+    [Fact]
+    public void Read_SecondDetector_GivesRunsOfItsOwn()
+    {
+        File.AppendAllText(Path.Combine(_folder, "apparatus.toml"), "\n[detectors.side]\nkind = \"analog\"\nefficiency = \"2.0e-3 ± 1e-4\"\nvolt_second_per_electron = \"1.6e-7 ± 3e-9 V s\"\ntime_constant = \"50 us\"\ncoupling_time = \"20 ± 1 ms\"\nexcess_noise = \"1.3\"\n");
+        File.AppendAllText(Path.Combine(_folder, "night.toml"), "\n[[runs]]\nmatch = \"*.h5\"\nname = \"{file}-side\"\nmode = \"arrival\"\nlayout = \"hdf5-matrix\"\ndetector = \"side\"\n");
+        LabConfiguration lab = ConfigurationReader.Read(_folder);
+        using var demo = new DemoDay("1515-weak");
+        Pipeline.Night.DayFolder day = Pipeline.Night.DayFolder.Open(demo.Day, lab);
+        Assert.Equal(["1515-weak", "1515-weak-side"], day.Runs.Select(r => r.Name));
+        Setup side = lab.SetupFor(day.Find("1515-weak-side").Rule);
+        Assert.Equal((0.002, DetectorKind.Analog, 0.02, 1.3), (side.Detector.Efficiency.Value, side.Detector.Kind, side.Detector.CouplingTime.Value, side.Detector.ExcessNoise.Value));
+        Assert.Equal(1.6e-3, lab.SetupFor(day.Find("1515-weak").Rule).Detector.Efficiency.Value, 12);
+        // the gain is as uncertain as it says, and counted once
+        Nuisance gain = Nuisances.Of(side).Single(n => n.Name == "gain");
+        Assert.Equal(0.002 * (1 + 3e-9 / 1.6e-7), gain.Shift(side, 1).Detector.Efficiency.Value, 1e-9);
+    }
+
+    [Theory]
+    [InlineData("name = \"side\"", "{file}")]
+    [InlineData("name = \"{file}-side\"\ndetector = \"sied\"", "side")]
+    public void Read_SecondDetectorWrong_SaysWhat(string keys, string expected)
+    {
+        File.AppendAllText(Path.Combine(_folder, "apparatus.toml"), "\n[detectors.side]\nkind = \"counting\"\nefficiency = \"2.0e-3\"\n");
+        File.AppendAllText(Path.Combine(_folder, "night.toml"), $"\n[[runs]]\nmatch = \"*.h5\"\nmode = \"arrival\"\nlayout = \"hdf5-matrix\"\n{keys}\n");
+        Fault fault = Assert.Throws<DataFaultException>(() => ConfigurationReader.Read(_folder)).Fault;
+        Assert.Contains(expected, fault.Expected + fault.Remedy, StringComparison.Ordinal);
+    }
+
     [Fact]
     public void Read_OtherCulture_GivesTheSame()
     {

@@ -138,6 +138,28 @@ public sealed class HousekeepingTests : IDisposable
         Assert.Contains("s/kind, shot 0", fault.Where, StringComparison.Ordinal);
     }
 
+    /// <summary>What peek proposes for files of other labs, unedited, reads them.</summary>
+    [SkippableTheory]
+    [InlineData("f.create_dataset('data', data=a)\nf['data'].attrs['t_start_us'] = -100.0; f['data'].attrs['dt_us'] = 10.0\nf['table'] = t", "table = \"table\"", null)]
+    [InlineData("f.create_dataset('data', data=a)\nx = f['data'].attrs\nx['t_start_s'] = -1e-4; x['dt_s'] = 1e-5\nx['probe_on'] = lit; x['ablation_on'] = fired", "attributes_of = \"data\"", null)]
+    [InlineData("f.create_dataset('data', data=a)\nx = f['data'].attrs\nx['t_start_s'] = -1e-4; x['dt_s'] = 1e-5\nf['h/probe_on'] = lit; f['h/ablation_fired'] = fired; f['h/decelerator'] = lit", "probe_on = \"h/probe_on\"", null)]
+    [InlineData("f.create_dataset('data', data=np.stack([a, a], axis=1))\nf['data'].attrs['t_start_us'] = -100.0; f['data'].attrs['dt_us'] = 10.0\nf['table'] = t", "channel = 0", "which of the channels 0 to 1")]
+    public void Peek_OtherPlaces_AreProposed(string write, string proposed, string? question)
+    {
+        string path = Path.Combine(_folder, "other.h5");
+        Python.Write(path, "n = 8\na = (np.arange(n*40).reshape(n, 40) % 7).astype('i2')\nlit = np.array([True, True, False, False] * 2); fired = np.array([True, False] * 4)\n"
+            + "t = np.zeros(n, [('shot', 'i8'), ('kind', 'S14'), ('condition', '?'), ('probe_power', 'f4')])\nt['shot'] = np.arange(n); t['kind'] = [b'signal', b'no_ablation', b'probe_blocked', b'dark'] * 2; t['condition'] = True\n" + write);
+        Proposal proposal = FileSketches.Of(path).Proposal!;
+        Assert.Contains(proposed, proposal.Toml, StringComparison.Ordinal);
+        if (question is null) Assert.Null(proposal.Question);
+        else Assert.Contains(question, proposal.Question, StringComparison.Ordinal);
+        using IShotSource source = ShotFiles.Open(path, Layout(proposal.Toml), DetectorKind.Counting);
+        Assert.Equal((-1e-4, 1e-5, 40), (source.Shape.OriginSeconds, source.Shape.TickSeconds, source.Shape.Samples));
+        Assert.Equal([0, 1, 2, 3, 0, 1, 2, 3], source.Shots.Select(s => (int)s.Kind));
+        Assert.Equal(Enumerable.Range(0, 320).Select(k => k % 7), source.ReadBlocks().Single().Codes!);
+        if (proposed.StartsWith("table", StringComparison.Ordinal)) Assert.All(source.Shots, s => Assert.Equal("on", s.Condition));
+    }
+
     static ShotFileLayout Layout(string toml) => LayoutText.Read(toml, "l");
 
     IShotSource Open(string toml, Hdf5Reader reader = Hdf5Reader.Best)

@@ -28,7 +28,7 @@ sealed class ManagedHdf5File : IHdf5File
         if (alone && Hazards.HasFlag(Hazards.Links)) throw Beyond("/", "links to other places or files", "a file without them: a loop of them would end the program");
         if (alone && Hazards.HasFlag(Hazards.PartialIntegers)) throw Beyond("/", "integers that fill only part of their bytes", "whole bytes");
         if (alone && Hazards.HasFlag(Hazards.SkippedFilters)) throw Beyond("/", "chunks stored without one of their filters", "all chunks stored in one way");
-        _file = Guarded("/", () => H5File.Open(_path, FileMode.Open, FileAccess.Read, FileShare.Read));
+        _file = Guarded("/", () => H5File.Open(new EndedStream(_path), leaveOpen: false));
     }
 
     public string Reader => "PureHDF 2.2.0";
@@ -153,8 +153,12 @@ sealed class ManagedHdf5File : IHdf5File
     IH5Attribute Attribute(string path, string attribute)
     {
         IH5Object holder = Find(path) ?? throw Missing(path);
-        return holder.AttributeExists(attribute) ? holder.Attribute(attribute)
-            : throw Refuse($"{path}, attribute {attribute}", "no such attribute", "an attribute of this name", "name the right attribute in the layout, or state the value there");
+        if (!holder.AttributeExists(attribute))
+            throw Refuse($"{path}, attribute {attribute}", "no such attribute", "an attribute of this name", "name the right attribute in the layout, or state the value there");
+        IH5Attribute found = holder.Attribute(attribute);
+        // an attribute stands in the metadata, which is read as it is
+        Hdf5Limits.CheckStorage(_name, $"{path}, attribute {attribute}", found.Space.Dimensions.Aggregate((double)found.Type.Size, (a, d) => a * d), true, new FileInfo(_path).Length);
+        return found;
     }
 
     static string Trimmed(string? text) => (text ?? "").TrimEnd('\0', ' ');

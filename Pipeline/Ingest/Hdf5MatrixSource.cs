@@ -1,6 +1,7 @@
 using System.Globalization;
 using Pipeline.Apparatus;
 using Pipeline.Hdf5;
+using Pipeline.Quantities;
 using Pipeline.Reduction;
 
 namespace Pipeline.Ingest;
@@ -89,7 +90,7 @@ sealed class Hdf5MatrixSource : Hdf5ShotSource
     }
 
     double Value(StatedOrStored of) =>
-        of.Attribute is { } attribute ? of.Factor * File.ReadNumberAttribute(_layout.Samples, attribute) : of.Value ?? 0;
+        of.Attribute is { } attribute ? UnitTable.ToSi(File.ReadNumberAttribute(_layout.Samples, attribute), of.Factor) : of.Value ?? 0;
 
     double[] Finite(double[] values, int firstShot)
     {

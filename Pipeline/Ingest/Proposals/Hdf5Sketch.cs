@@ -6,7 +6,7 @@ namespace Pipeline.Ingest;
 /// <summary>What an HDF5 file holds, and which layout it looks like.</summary>
 static class Hdf5Sketch
 {
-    const int MostNodes = 4000, ShownNodes = 60;
+    const int MostNodes = 4000, ShownNodes = 60, MostChannels = 16;
 
     public static FileSketch Of(string path)
     {
@@ -26,27 +26,45 @@ static class Hdf5Sketch
         if (nodes.Count > ShownNodes) yield return string.Create(CultureInfo.InvariantCulture, $"... and {nodes.Count - ShownNodes} more");
     }
 
-    /// <summary>The largest dataset of two dimensions.</summary>
+    /// <summary>The largest dataset of two dimensions, or of three with few channels.</summary>
     static Proposal? Matrix(IHdf5File file, IReadOnlyList<Hdf5Node> nodes)
     {
-        Hdf5Node? samples = nodes.Where(n => n.Dimensions?.Count == 2 && n.Elements is ElementKind.Integer or ElementKind.Real).MaxBy(n => n.Dimensions![0] * n.Dimensions[1]);
+        Hdf5Node? samples = nodes.Where(n => n.Dimensions?.Count is 2 or 3 && n.Elements is ElementKind.Integer or ElementKind.Real).MaxBy(n => n.Dimensions!.Aggregate(1L, (a, d) => a * d));
         if (samples is null) return null;
-        Hdf5Node[] perShot = [.. nodes.Where(n => n.Dimensions?.Count == 1 && n.Dimensions[0] == samples.Dimensions![0])];
-        var roles = new Roles(perShot.Select(n => n.Path));
+        bool channels = samples.Dimensions!.Count == 3;
+        if (channels && samples.Dimensions[1] > MostChannels) return null;
+        var (roles, place, labels) = Housekeeping(file, nodes, samples);
         (string? start, string? step) = (Named(samples, "START"), Named(samples, "DT", "STEP", "INTERVAL"));
-        string? question = start is null || step is null ? "when does sampling start after the trigger, and how long is a sample? Put both under [samples]" : null;
+        string? question = start is null || step is null ? "when does sampling start after the trigger, and how long is a sample? Put both under [samples]"
+            : channels ? $"which of the channels 0 to {samples.Dimensions[1] - 1} is the detector? Put it under [samples] as channel" : null;
         string text = $"""
             format = "hdf5-matrix"
 
             [samples]
             dataset = {TomlText.Quote(samples.Path)}
-            start = {Stored(start, "\"0 s\"")}
+            {(channels ? "channel = 0\n" : "")}start = {Stored(start, "\"0 s\"")}
             step = {Stored(step, "\"1 us\"")}
             {Factor(samples, "scale")}{Factor(samples, "offset")}refers_to = {Meaning(nodes)}
 
 
             """;
-        return Finish(text, roles, roles.Of("kind") is { } kind ? file.ReadLabels(kind) : null, question, [$"{samples.Path}: samples [shot, sample]"]);
+        return Finish(text, roles, labels("kind"), question, [$"{samples.Path}: samples [shot, {(channels ? "channel, " : "")}sample]"], place, labels("condition"));
+    }
+
+    /// <summary>A table with one row a shot, else datasets of one value a shot, else attributes of the samples.</summary>
+    static (Roles Roles, string Place, Func<string, string[]?> Labels) Housekeeping(IHdf5File file, IReadOnlyList<Hdf5Node> nodes, Hdf5Node samples)
+    {
+        Hdf5Node[] perShot = [.. nodes.Where(n => n.Dimensions?.Count == 1 && n.Dimensions[0] == samples.Dimensions![0])];
+        if (perShot.FirstOrDefault(n => n.Elements == ElementKind.Table) is { } table)
+        {
+            var fields = new Roles(table.Fields);
+            return (fields, $"table = {TomlText.Quote(table.Path)}\n", role => fields.Of(role) is { } field ? file.ReadLabels(table.Path, field) : null);
+        }
+        var datasets = new Roles(perShot.Select(n => n.Path));
+        var attributes = new Roles(samples.Attributes.Select(a => a.Name));
+        return datasets.Of("kind") is null && !datasets.HasSwitches && (attributes.Of("kind") is not null || attributes.HasSwitches)
+            ? (attributes, $"attributes_of = {TomlText.Quote(samples.Path)}\n", role => attributes.Of(role) is { } name ? file.ReadTextAttributes(samples.Path, name) : null)
+            : (datasets, "", role => datasets.Of(role) is { } path ? file.ReadLabels(path) : null);
     }
 
     /// <summary>Many groups that differ in a number, each with one long dataset.</summary>
@@ -126,11 +144,12 @@ static class Hdf5Sketch
         return Finish(text, roles, roles.Of("kind") is { } kind ? file.ReadLabels(kind) : null, null, [$"{times.Path}: photon time stamps", $"{index.Path}: position of their shot"]);
     }
 
-    static Proposal Finish(string text, Roles roles, string[]? kinds, string? question, string[] words)
+    static Proposal Finish(string text, Roles roles, string[]? kinds, string? question, string[] words, string place = "", string[]? conditions = null)
     {
         (string table, string? unknown) = Roles.Kinds(kinds ?? []);
-        if (kinds is null) unknown = "which dataset or attribute holds the kind of shot (probe and ablation on or off)? Put it under [shots] as kind";
-        return new Proposal(text + roles.ShotsTable() + "\n" + table, [.. words, .. roles.Words], question ?? unknown);
+        if (kinds is null && !roles.HasSwitches) unknown = "which dataset or attribute holds the kind of shot (probe and ablation on or off)? Put it under [shots] as kind";
+        string shots = roles.ShotsTable().Replace("[shots]\n", "[shots]\n" + place, StringComparison.Ordinal);
+        return new Proposal(text + shots + (roles.HasSwitches ? "" : "\n" + table) + Roles.Conditions(conditions ?? []), [.. words, .. roles.Words], question ?? unknown);
     }
 
     static string? Named(Hdf5Node node, params string[] parts) =>

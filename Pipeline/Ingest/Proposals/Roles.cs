@@ -17,12 +17,19 @@ sealed class Roles
             bool monitor = n.Contains("MONITOR", StringComparison.Ordinal) || n.Contains("POWER", StringComparison.Ordinal) || n.Contains("ENERGY", StringComparison.Ordinal);
             if (n.Contains("PROBE", StringComparison.Ordinal) && monitor) _found.TryAdd("probe_monitor", name);
             else if (n.Contains("ABLATION", StringComparison.Ordinal) && monitor) _found.TryAdd("ablation_monitor", name);
+            else if (n.Contains("PROBE", StringComparison.Ordinal) && IsSwitch(n)) _found.TryAdd("probe_on", name);
+            else if (n.Contains("ABLATION", StringComparison.Ordinal) && IsSwitch(n)) _found.TryAdd("ablation_on", name);
             else if (n.Contains("DETUNING", StringComparison.Ordinal)) _found.TryAdd("detuning", name);
             else if (n.EndsWith("KIND", StringComparison.Ordinal) || n.EndsWith("SHOT_TYPE", StringComparison.Ordinal)) _found.TryAdd("kind", name);
             else if (n.Contains("DECELERATOR", StringComparison.Ordinal) || n.EndsWith("CONDITION", StringComparison.Ordinal)) _found.TryAdd("condition", name);
-            else if (n is "SHOT" or "SHOT_NUMBER" || n.EndsWith("/SHOT", StringComparison.Ordinal) || n.EndsWith("/SHOT_NUMBER", StringComparison.Ordinal)) _found.TryAdd("number", name);
+            else if (n is "SHOT" or "SHOT_NUMBER" or "NUMBER" || n.EndsWith("/SHOT", StringComparison.Ordinal) || n.EndsWith("/SHOT_NUMBER", StringComparison.Ordinal)) _found.TryAdd("number", name);
         }
     }
+
+    static bool IsSwitch(string name) => name.EndsWith("ON", StringComparison.Ordinal) || name.EndsWith("OPEN", StringComparison.Ordinal) || name.EndsWith("FIRED", StringComparison.Ordinal);
+
+    /// <summary>Whether the kind of shot follows from two switches.</summary>
+    public bool HasSwitches => Of("kind") is null && Of("probe_on") is not null && Of("ablation_on") is not null;
 
     public string? Of(string role) => _found.GetValueOrDefault(role);
 
@@ -35,7 +42,12 @@ sealed class Roles
             if (value is not null) lines.Add($"{key} = {TomlText.Quote(value)}");
         }
         Add("number", Of("number"));
-        Add("kind", kind ?? Of("kind") ?? "?");
+        if (HasSwitches && kind is null)
+        {
+            Add("probe_on", Of("probe_on"));
+            Add("ablation_on", Of("ablation_on"));
+        }
+        else Add("kind", kind ?? Of("kind") ?? "?");
         string? where = condition ?? Of("condition");
         if (where is null) lines.Add("only_condition = \"off\"");
         else Add("condition", where);
@@ -55,6 +67,10 @@ sealed class Roles
         string table = "[kinds]\n" + string.Join('\n', KnownKinds.Select(k => $"{k} = \"{k}\"")) + "\n";
         return (table, unknown.Length == 0 ? null : $"which kind of shot are {string.Join(", ", unknown)}? Put the file's own words under [kinds]");
     }
+
+    /// <summary>The [conditions] table for labels that are a boolean's.</summary>
+    public static string Conditions(IEnumerable<string> labels) =>
+        labels.All(l => l is "TRUE" or "FALSE") && labels.Any() ? "\n[conditions]\nTRUE = \"on\"\nFALSE = \"off\"\n" : "";
 
     static string FrequencyUnit(string name) => name.ToUpperInvariant() switch
     {
