@@ -6,7 +6,7 @@ namespace Pipeline.Hdf5;
 /// <summary>Lists what a file holds. Files with soft links are refused before, so a walk ends.</summary>
 static class Hdf5Walk
 {
-    const int Deepest = 16;
+    const int Deepest = 16, LongestText = 1 << 20;
 
     public static IReadOnlyList<Hdf5Node> From(IH5Group root, int most)
     {
@@ -48,6 +48,8 @@ static class Hdf5Walk
     {
         try
         {
+            // no string of an attribute is that long in a file that is whole
+            if (a.Type.Size > LongestText) return "(not shown)";
             if (a.Space.Rank != 0) return $"({Word(a.Type)}, {a.Space.Rank} {(a.Space.Rank == 1 ? "dimension" : "dimensions")})";
             return a.Type.Class switch
             {
