@@ -74,6 +74,20 @@ sealed class LabFile
         };
     }
 
+    /// <summary>The apparatus of a scan at the angle of the lab notes, with lines and jitter; the zero of the axis as another run told it.</summary>
+    public Setup ScanSetup(Measured zero, bool across = false)
+    {
+        Setup setup = Setup();
+        double angle = across ? Math.PI / 2 : Number("probe_angle_deg") * Math.PI / 180, transverse = Number("transverse_sigma_m_per_s") * Math.Sin(angle) / Number("wavelength_m");
+        double jitter = Math.Sqrt(Math.Pow(Number("laser_jitter_hz"), 2) + Math.Pow(Number("shot_jitter_hz"), 2));
+        double[] offsets = [.. _setup.GetProperty("hyperfine_offsets_hz").EnumerateArray().Select(o => o.GetDouble())], weights = [.. _setup.GetProperty("hyperfine_weights").EnumerateArray().Select(o => o.GetDouble())];
+        return setup with
+        {
+            Species = setup.Species with { Lines = [.. offsets.Zip(weights, (o, w) => new SpectralLine(o, w))] },
+            Probe = setup.Probe with { Angle = new(angle, Sigma("probe_angle_deg") * Math.PI / 180), DetuningSpread = new(Math.Sqrt(jitter * jitter + transverse * transverse)), LaserJitter = new(jitter), AxisZero = zero },
+        };
+    }
+
     public static AnalysisSettings Settings(string background = "steady", string estimator = "unfolded") => new()
     {
         Reduction = new ReductionSettings { ShotsPerBlock = 5, UnlockedBeyondHz = 100e6 },
@@ -84,6 +98,7 @@ sealed class LabFile
 
     static readonly ShotColumns HdfColumns = new()
     {
+        Point = null,
         Number = "shots/shot", Kind = "shots/kind", Condition = "shots/decelerator", ProbeMonitor = "shots/probe_monitor_v",
         AblationMonitor = "shots/ablation_monitor_v", Detuning = "shots/detuning_readback_hz", KindLabels = ["signal", "no_ablation", "probe_blocked", "dark"],
     };

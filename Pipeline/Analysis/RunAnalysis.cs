@@ -19,14 +19,21 @@ public static class RunAnalysis
     /// <summary>Numerical behaviour of the program: raised whenever the same input may give other numbers.</summary>
     public const int NumericalVersion = 2;
 
+    /// <summary>Names of all modes of measurement.</summary>
+    public static IReadOnlyList<string> Modes { get; } = [.. ResponseModes.All.Select(m => m.Name), TransverseFitter.Mode];
+
+    /// <summary>Whether a mode scans the laser.</summary>
+    public static bool IsScan(string mode) => mode == TransverseFitter.Mode || ResponseModes.Named(mode).Scanned != Scanned.Nothing;
+
     /// <summary>Spectra and numbers of every condition.</summary>
     public static IReadOnlyList<SpectrumOutcome> Fit(BinnedRun run, string mode, Setup setup, AnalysisSettings settings)
     {
         if (run.Conditions.Count == 0)
             throw new DataFaultException("run", "no kept signal shots", "at least one shot with probe and ablation on",
                 "look at the shots that were cut, and at the labels of the layout");
-        return [.. run.Conditions.Select(condition => SpectrumFitter.Fit(run, condition, setup,
-            BackgroundModels.Named(settings.Background), ResponseModes.Named(mode), settings.Fit))];
+        IBackgroundModel background = BackgroundModels.Named(settings.Background);
+        return [.. run.Conditions.Select(condition => mode == TransverseFitter.Mode ? TransverseFitter.Fit(run, condition, setup, background, settings.Fit)
+            : SpectrumFitter.Fit(run, condition, setup, background, ResponseModes.Named(mode), settings.Fit))];
     }
 
     /// <summary>Folded predictions, and the verdict on the run.</summary>
@@ -37,7 +44,8 @@ public static class RunAnalysis
         var answers = new List<Answer>();
         foreach (SpectrumOutcome fit in fits)
         {
-            if (!predictions.TryGetValue(fit.Signal.Condition, out ConditionPrediction? prediction))
+            // a scan would need every molecule folded at every point: not built yet, and said so in the remarks of the run
+            if (fit.Signal.Axis.Points.Count > 0 || !predictions.TryGetValue(fit.Signal.Condition, out ConditionPrediction? prediction))
             {
                 conditions.Add(new ConditionOutcome(fit, null, false));
                 continue;

@@ -21,7 +21,7 @@ public sealed record ConditionOutcome(SpectrumOutcome Fit, FoldedPrediction? Pre
 public sealed record ShotTally(int Read, IReadOnlyList<ShotCut> Cuts, IReadOnlyList<KeptShots> Kept)
 {
     public static ShotTally Of(BinnedRun run) =>
-        new(run.ShotsRead, run.Cuts, [.. run.Groups.Select(g => new KeptShots(g.Condition, g.Kind, (int)g.Shots))]);
+        new(run.ShotsRead, run.Cuts, [.. run.Groups.GroupBy(g => (g.Condition, g.Kind)).Select(g => new KeptShots(g.Key.Condition, g.Key.Kind, (int)g.Sum(p => p.Shots)))]);
 }
 
 /// <summary>Number of shots kept of one condition and kind.</summary>

@@ -25,6 +25,10 @@ public sealed record Probe
     public Measured? ScatteringRate { get; init => field = value is { } r ? Guard.Positive(r) : null; }
     /// <summary>Detuning of the laser from the line centroid, Hz.</summary>
     public Measured Detuning { get; init; }
+    /// <summary>Laser reading of a scan at which the laser stands on the line centroid, Hz.</summary>
+    public Measured AxisZero { get; init; }
+    /// <summary>Rms jitter of the laser, Hz; part of <see cref="DetuningSpread"/>.</summary>
+    public Measured LaserJitter { get; init => field = Guard.NotNegative(value); }
     /// <summary>Rms width of all that spreads the detuning between molecules or shots, apart from their speed along the beam:
     /// laser jitter and transverse Doppler shifts, Hz.</summary>
     public Measured DetuningSpread { get; init => field = Guard.NotNegative(value); }

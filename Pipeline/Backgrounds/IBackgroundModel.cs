@@ -9,9 +9,25 @@ public interface IBackgroundModel
     /// <summary>Name in the configuration.</summary>
     string Name { get; }
 
+    /// <summary>The background of a condition, by all its shots.</summary>
+    /// <exception cref="DataFaultException">The run lacks the shots that the model needs.</exception>
+    IBackgroundFit Fit(BinnedRun run, string condition, Detector detector);
+}
+
+/// <summary>A background that is known.</summary>
+public interface IBackgroundFit
+{
+    /// <summary>Signal shots, or some of them, with the background that stands in them.</summary>
+    NetSignal Under(ShotGroup signal);
+}
+
+/// <summary>What every background model offers by what it must.</summary>
+public static class BackgroundModelExtensions
+{
     /// <summary>The summed signal of a condition and its background.</summary>
     /// <exception cref="DataFaultException">The run lacks the shots that the model needs.</exception>
-    NetSignal Subtract(BinnedRun run, string condition, Detector detector);
+    public static NetSignal Subtract(this IBackgroundModel model, BinnedRun run, string condition, Detector detector) =>
+        model.Fit(run, condition, detector).Under(run.Find(condition, ShotKind.Signal)!);
 }
 
 /// <summary>Every background model. To add one, write its file and add its line.</summary>

@@ -26,9 +26,11 @@ sealed record ShotMeans
     /// <summary>[bins] variance of <see cref="PerShot"/>.</summary>
     public double PerShotVariance(int bin) => Variance[bin] / (Live[bin] * Shots * Live[bin] * Shots);
 
-    public static ShotMeans? Of(BinnedRun run, string condition, ShotKind kind, Detector detector)
+    public static ShotMeans? Of(BinnedRun run, string condition, ShotKind kind, Detector detector) =>
+        run.Find(condition, kind) is { } group && group.Shots > 0 ? Of(run, group, detector) : null;
+
+    public static ShotMeans Of(BinnedRun run, ShotGroup group, Detector detector)
     {
-        if (run.Find(condition, kind) is not { } group || !(group.Shots > 0)) return null;
         bool counting = run.DetectorKind == DetectorKind.Counting;
         double unit = counting ? 1 : run.Axis.TickSeconds / detector.VoltSecondPerElectron!.Value.Value;
         double[] total = [.. Enumerable.Range(0, run.Axis.Bins).Select(i => unit * group.BlockSums.Sum(b => b[i]))];

@@ -16,7 +16,7 @@ sealed class SteadyBackground : IBackgroundModel
 
     public string Name => "steady";
 
-    public NetSignal Subtract(BinnedRun run, string condition, Detector detector)
+    public IBackgroundFit Fit(BinnedRun run, string condition, Detector detector)
     {
         if (run.DetectorKind != DetectorKind.Counting)
             throw new DataFaultException("background = \"steady\"", "an analog detector", "a counting detector", "use background = \"templates\"");
@@ -31,7 +31,12 @@ sealed class SteadyBackground : IBackgroundModel
         if (!best.Converged || best.Covariance is null)
             throw new DataFaultException($"condition \"{condition}\"", "a background fit that did not converge",
                 "steady scatter and dark counts and a decaying flash", "look at the shots without molecules, or use background = \"templates\"");
-        return Assemble(data, best);
+        return new SteadyFit(run, detector, data, best);
+    }
+
+    sealed class SteadyFit(BinnedRun run, Detector detector, SteadyData data, PoissonFit fit) : IBackgroundFit
+    {
+        public NetSignal Under(ShotGroup signal) => Assemble(data.WithSignal(ShotMeans.Of(run, signal, detector), detector), fit);
     }
 
     static PoissonFit BestOf(SteadyData data, IEnumerable<double[]> starts)

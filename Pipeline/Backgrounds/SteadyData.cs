@@ -17,8 +17,9 @@ sealed class SteadyData
 {
     readonly List<SteadyCell> _cells = [];
     readonly List<double> _counts = [];
+    double? _scatterShots;
 
-    SteadyData(BinnedRun run, string condition, ShotMeans signal) => (Axis, Condition, Signal) = (run.Axis, condition, signal);
+    SteadyData(SignalAxis axis, string condition, ShotMeans signal) => (Axis, Condition, Signal) = (axis, condition, signal);
 
     public SignalAxis Axis { get; }
     public string Condition { get; }
@@ -33,7 +34,7 @@ sealed class SteadyData
     public double FlashScaleSigma { get; private init; }
     /// <summary>p-value of the shots without ablation being constant in time; null without such shots.</summary>
     public double? Flatness { get; private set; }
-    public List<string> Remarks { get; } = [];
+    public List<string> Remarks { get; private init; } = [];
     public IReadOnlyList<SteadyCell> Cells => _cells;
     public double[] Counts => [.. _counts];
 
@@ -44,9 +45,10 @@ sealed class SteadyData
         ShotMeans? scatter = ShotMeans.Of(run, condition, ShotKind.NoAblation, detector);
         ShotMeans? flash = ShotMeans.Of(run, condition, ShotKind.ProbeBlocked, detector);
         ShotMeans? dark = ShotMeans.Of(run, condition, ShotKind.Dark, detector);
-        var data = new SteadyData(run, condition, signal)
+        var data = new SteadyData(run.Axis, condition, signal)
         {
             Flash = flash,
+            _scatterShots = scatter?.Shots,
             SeparatesDark = flash is not null || dark is not null,
             SignalProbe = Monitor(signal.ProbeMonitor),
             SignalAblation = Monitor(signal.AblationMonitor),
@@ -67,6 +69,14 @@ sealed class SteadyData
         return data;
     }
 
+    /// <summary>The same background under other signal shots of the condition.</summary>
+    public SteadyData WithSignal(ShotMeans signal, Detector detector) => new(Axis, Condition, signal)
+    {
+        Flash = Flash, SeparatesDark = SeparatesDark, SignalProbe = Monitor(signal.ProbeMonitor), SignalAblation = Monitor(signal.AblationMonitor), _scatterShots = _scatterShots,
+        ScatterScaleSigma = _scatterShots is { } lit ? detector.ProbeMonitorNoise * Math.Sqrt(1 / signal.Shots + 1 / lit) : 0,
+        FlashScaleSigma = Flash is null ? 0 : detector.AblationMonitorNoise * Math.Sqrt(1 / signal.Shots + 1 / Flash.Shots), Flatness = Flatness, Remarks = Remarks,
+    };
+
     /// <summary>Starting dark and scatter rates.</summary>
     public (double Dark, double Scatter) StartRates()
     {
@@ -84,8 +94,15 @@ sealed class SteadyData
     void AddConstant(ShotMeans? kind, double probe)
     {
         if (kind is null) return;
-        double exposure = Enumerable.Range(0, Axis.Bins).Sum(i => kind.Shots * kind.Live[i] * Axis.WidthSeconds(i));
-        Add(new SteadyCell(exposure, exposure * probe, 0, Axis.EdgeSeconds(0), Axis.EdgeSeconds(Axis.Bins)), kind.Total.Sum());
+        // in stretches, so that there are more counts than parameters where no other kind of shot was recorded
+        const int Stretches = 8;
+        for (int s = 0; s < Stretches; s++)
+        {
+            int from = s * Axis.Bins / Stretches, to = (s + 1) * Axis.Bins / Stretches;
+            if (to == from) continue;
+            double exposure = Enumerable.Range(from, to - from).Sum(i => kind.Shots * kind.Live[i] * Axis.WidthSeconds(i));
+            Add(new SteadyCell(exposure, exposure * probe, 0, Axis.EdgeSeconds(from), Axis.EdgeSeconds(to)), kind.Total.AsSpan(from, to - from).ToArray().Sum());
+        }
     }
 
     /// <summary>Signal shots before the trigger hold scatter and dark counts only.</summary>

@@ -11,19 +11,27 @@ sealed class TemplateBackground : IBackgroundModel
 {
     public string Name => "templates";
 
-    public NetSignal Subtract(BinnedRun run, string condition, Detector detector)
+    public IBackgroundFit Fit(BinnedRun run, string condition, Detector detector)
     {
-        ShotMeans signal = ShotMeans.Of(run, condition, ShotKind.Signal, detector) ?? throw Missing(condition, "signal");
+        if (run.Find(condition, ShotKind.Signal) is null) throw Missing(condition, "signal");
         ShotMeans scatter = ShotMeans.Of(run, condition, ShotKind.NoAblation, detector) ?? throw Missing(condition, "no_ablation");
-        ShotMeans? flash = ShotMeans.Of(run, condition, ShotKind.ProbeBlocked, detector);
-        ShotMeans? dark = ShotMeans.Of(run, condition, ShotKind.Dark, detector);
+        ShotMeans? flash = ShotMeans.Of(run, condition, ShotKind.ProbeBlocked, detector), dark = ShotMeans.Of(run, condition, ShotKind.Dark, detector);
         var remarks = new List<string>();
         if (flash is null) remarks.Add($"{condition}: no probe-blocked shots, the ablation flash is taken as absent");
         else if (dark is null) remarks.Add($"{condition}: no dark shots, dark counts are taken as absent");
-        MonitorRatio probe = MonitorRatio.Of(signal.ProbeMonitor, scatter.ProbeMonitor, signal.Shots, scatter.Shots, detector.ProbeMonitorNoise);
-        MonitorRatio ablation = flash is null ? MonitorRatio.One
-            : MonitorRatio.Of(signal.AblationMonitor, flash.AblationMonitor, signal.Shots, flash.Shots, detector.AblationMonitorNoise);
-        return Assemble(run, condition, (signal, scatter, flash, dark), probe, ablation, remarks);
+        return new TemplateFit(run, condition, detector, (scatter, flash, dark), remarks);
+    }
+
+    sealed class TemplateFit(BinnedRun run, string condition, Detector detector, (ShotMeans Scatter, ShotMeans? Flash, ShotMeans? Dark) kinds, List<string> remarks) : IBackgroundFit
+    {
+        public NetSignal Under(ShotGroup group)
+        {
+            ShotMeans signal = ShotMeans.Of(run, group, detector);
+            MonitorRatio probe = MonitorRatio.Of(signal.ProbeMonitor, kinds.Scatter.ProbeMonitor, signal.Shots, kinds.Scatter.Shots, detector.ProbeMonitorNoise);
+            MonitorRatio ablation = kinds.Flash is not { } flash ? MonitorRatio.One
+                : MonitorRatio.Of(signal.AblationMonitor, flash.AblationMonitor, signal.Shots, flash.Shots, detector.AblationMonitorNoise);
+            return Assemble(run, condition, (signal, kinds.Scatter, kinds.Flash, kinds.Dark), probe, ablation, remarks);
+        }
     }
 
     static NetSignal Assemble(BinnedRun run, string condition, (ShotMeans Signal, ShotMeans Scatter, ShotMeans? Flash, ShotMeans? Dark) kinds,

@@ -8,8 +8,8 @@ static class ApparatusReader
 {
     /// <param name="root">The file.</param>
     /// <param name="species">Reads species/NAME.toml.</param>
-    /// <returns>The setup with its usual detector, and other detectors by name.</returns>
-    public static (Setup Setup, IReadOnlyDictionary<string, Detector> Detectors) Read(TomlTable root, Func<TomlTable, string, Species> species)
+    /// <returns>The setup with its usual detector, and other detectors and probes by name.</returns>
+    public static (Setup Setup, IReadOnlyDictionary<string, Detector> Detectors, IReadOnlyDictionary<string, Probe> Probes) Read(TomlTable root, Func<TomlTable, string, Species> species)
     {
         Species molecule = species(root, root.Text("species"));
         Decelerator? decelerator = root.OptionalTable("decelerator") is { } section ? ReadDecelerator(section) : null;
@@ -18,6 +18,8 @@ static class ApparatusReader
         Detector detector = ReadDetector(root.Table("detector"));
         var others = new Dictionary<string, Detector>(StringComparer.Ordinal);
         if (root.OptionalTable("detectors") is { } named) foreach (string name in named.Keys.ToArray()) others[name] = ReadDetector(named.Table(name));
+        var probes = new Dictionary<string, Probe>(StringComparer.Ordinal);
+        if (root.OptionalTable("probes") is { } lasers) foreach (string name in lasers.Keys.ToArray()) probes[name] = ReadProbe(lasers.Table(name), molecule);
         EmissionProfile emission = ReadEmission(root.Table("emission"));
         var conditions = ReadConditions(root.Table("conditions"), decelerator);
         TomlTable trap = root.Table("trap");
@@ -27,7 +29,7 @@ static class ApparatusReader
         return (trap.Build(() => new Setup
         {
             Species = molecule, Beamline = beamline, Probe = probe, Detector = detector, Emission = emission, Conditions = conditions, CaptureSpeed = capture,
-        }, new Dictionary<string, string>(StringComparer.Ordinal) { ["CaptureSpeed"] = "capture_velocity" }), others);
+        }, new Dictionary<string, string>(StringComparer.Ordinal) { ["CaptureSpeed"] = "capture_velocity" }), others, probes);
     }
 
     static Beamline ReadBeamline(TomlTable t, Decelerator? decelerator)
@@ -77,13 +79,14 @@ static class ApparatusReader
         if (saturation is null == rate is null)
             throw t.Refuse("saturation", saturation is null ? "neither saturation nor scattering_rate" : "both saturation and scattering_rate", "one of them", "state how bright the probe is, once");
         Measured detuning = t.OptionalQuantity("detuning", Dimension.Frequency) ?? default;
+        Measured zero = t.OptionalQuantity("axis_zero", Dimension.Frequency) ?? default;
         Measured jitter = t.OptionalQuantity("laser_jitter", Dimension.Frequency) ?? default, transverse = t.OptionalQuantity("transverse_speed_spread", Dimension.Speed) ?? default;
         t.RefuseUnknown();
         double project = Math.Abs(Math.Sin(angle.Value)) / species.Wavelength.Value, spread = double.Hypot(jitter.Value, transverse.Value * project);
         double sigma = spread == 0 ? 0 : double.Hypot(jitter.Value * jitter.Sigma, transverse.Value * transverse.Sigma * project * project) / spread;
         return t.Build(() => new Probe
         {
-            Shape = shape, Width = width, Angle = angle, Saturation = saturation, ScatteringRate = rate, Detuning = detuning, DetuningSpread = new Measured(spread, sigma),
+            Shape = shape, Width = width, Angle = angle, Saturation = saturation, ScatteringRate = rate, Detuning = detuning, DetuningSpread = new Measured(spread, sigma), LaserJitter = jitter, AxisZero = zero,
         });
     }
 

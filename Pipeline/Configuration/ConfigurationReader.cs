@@ -3,7 +3,6 @@ using System.Text;
 using Pipeline.Backgrounds;
 using Pipeline.Fitting;
 using Pipeline.Ingest;
-using Pipeline.Response;
 
 namespace Pipeline.Configuration;
 
@@ -39,14 +38,14 @@ public static class ConfigurationReader
         var (shots, molecules, broken) = ReadLayouts(folder, files, faults);
         var apparatus = Try(faults, () => Tuple.Create(ApparatusReader.Read(TomlFile.Read(folder, Apparatus), (root, name) => SpeciesOf(folder, root, name, files))));
         Apparatus.Setup? setup = apparatus?.Item1.Setup;
-        var choices = new NightChoices([.. BackgroundModels.All.Select(b => b.Name)], SpectrumEstimatorNames.All, [.. ResponseModes.All.Select(m => m.Name)],
-            [.. shots.Keys, .. broken], [.. molecules.Keys, .. broken], setup?.Conditions.Keys.ToArray() ?? [], apparatus?.Item1.Detectors.Keys.ToArray() ?? []);
+        var choices = new NightChoices([.. BackgroundModels.All.Select(b => b.Name)], SpectrumEstimatorNames.All, [.. Analysis.RunAnalysis.Modes],
+            [.. shots.Keys, .. broken], [.. molecules.Keys, .. broken], setup?.Conditions.Keys.ToArray() ?? [], apparatus?.Item1.Detectors.Keys.ToArray() ?? [], apparatus?.Item1.Probes.Keys.ToArray() ?? []);
         if (setup is null) return null;
         var night = Try(faults, () => Tuple.Create(NightReader.Read(TomlFile.Read(folder, Night), choices)));
         if (night is null || faults.Count > 0) return null;
         return new LabConfiguration
         {
-            Setup = setup, Detectors = apparatus!.Item1.Detectors, Analysis = night.Item1.Settings, Runs = night.Item1.Runs, Predictions = night.Item1.Predictions, ShotLayouts = shots,
+            Setup = setup, Detectors = apparatus!.Item1.Detectors, Probes = apparatus.Item1.Probes, Analysis = night.Item1.Settings, Runs = night.Item1.Runs, Predictions = night.Item1.Predictions, ShotLayouts = shots,
             MoleculeLayouts = molecules, Files = [.. files], Digest = DigestOf(folder, files),
         };
     }

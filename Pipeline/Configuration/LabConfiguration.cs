@@ -16,6 +16,11 @@ public sealed record RunRule(string Match, string Mode, string Layout)
     public string? Name { get; init; }
     /// <summary>Name of a detector beside the usual one; null: the usual one.</summary>
     public string? Detector { get; init; }
+    /// <summary>Name of a probe beside the usual one; null: the usual one.</summary>
+    public string? Probe { get; init; }
+    /// <summary>Pattern over run names: the scan across the beam that tells the zero of the frequency axis, the last one whose name comes
+    /// before this run's, else the first; null: axis_zero of the probe.</summary>
+    public string? ZeroFrom { get; init; }
 }
 
 /// <summary>Whether a prediction states how many molecules arrive, or only their distribution.</summary>
@@ -41,6 +46,8 @@ public sealed record LabConfiguration
     public required Setup Setup { get; init; }
     /// <summary>Detectors beside the usual one, by name.</summary>
     public IReadOnlyDictionary<string, Detector> Detectors { get; init; } = new Dictionary<string, Detector>(StringComparer.Ordinal);
+    /// <summary>Probes beside the usual one, by name.</summary>
+    public IReadOnlyDictionary<string, Probe> Probes { get; init; } = new Dictionary<string, Probe>(StringComparer.Ordinal);
     public required AnalysisSettings Analysis { get; init; }
     /// <summary>First match wins among the rules without a name.</summary>
     public required IReadOnlyList<RunRule> Runs { get; init; }
@@ -53,5 +60,9 @@ public sealed record LabConfiguration
     public required IReadOnlyList<string> Files { get; init; }
 
     /// <summary>The apparatus as the runs of a rule see it.</summary>
-    public Setup SetupFor(RunRule rule) => rule.Detector is { } name ? Setup with { Detector = Detectors[name] } : Setup;
+    public Setup SetupFor(RunRule rule)
+    {
+        Setup setup = rule.Detector is { } detector ? Setup with { Detector = Detectors[detector] } : Setup;
+        return rule.Probe is { } probe ? setup with { Probe = Probes[probe] } : setup;
+    }
 }

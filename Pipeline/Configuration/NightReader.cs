@@ -15,10 +15,11 @@ namespace Pipeline.Configuration;
 /// <param name="MoleculeLayouts">Layouts of predictions.</param>
 /// <param name="Conditions">Conditions of the apparatus.</param>
 /// <param name="Detectors">Detectors beside the usual one.</param>
+/// <param name="Probes">Probes beside the usual one.</param>
 sealed record NightChoices(
     IReadOnlyCollection<string> Backgrounds, IReadOnlyCollection<string> Estimators, IReadOnlyCollection<string> Modes,
     IReadOnlyCollection<string> ShotLayouts, IReadOnlyCollection<string> MoleculeLayouts, IReadOnlyCollection<string> Conditions,
-    IReadOnlyCollection<string> Detectors);
+    IReadOnlyCollection<string> Detectors, IReadOnlyCollection<string> Probes);
 
 /// <summary>night.toml.</summary>
 static class NightReader
@@ -60,6 +61,7 @@ static class NightReader
             RelativeBinWidth = relative, ShortestBinSeconds = shortest, UnlockedBeyondHz = unlocked,
             ShotsPerBlock = a.Has("shots_per_block") ? a.Whole("shots_per_block", 1, 100_000) : plain.ShotsPerBlock,
             MonitorOutlierBeyond = Deviations(checks),
+            ScanStepHz = a.OptionalQuantity("scan_step", Dimension.Frequency)?.Value,
             TriggerMarkWithinSeconds = checks?.OptionalQuantity("trigger_mark_within", Dimension.Time)?.Value,
             CutFlatRecords = checks is null || !checks.Has("cut_flat_records") ? plain.CutFlatRecords : checks.Flag("cut_flat_records"),
             CutSaturated = checks is null || !checks.Has("cut_saturated") ? plain.CutSaturated : checks.Flag("cut_saturated"),
@@ -118,6 +120,7 @@ static class NightReader
         var rule = new RunRule(t.Text("match"), t.Choice("mode", choices.Modes), t.Choice("layout", choices.ShotLayouts))
         {
             Name = t.OptionalText("name"), Detector = t.Has("detector") ? t.Choice("detector", choices.Detectors) : null,
+            Probe = t.Has("probe") ? t.Choice("probe", choices.Probes) : null, ZeroFrom = t.OptionalText("zero_from"),
         };
         t.RefuseUnknown();
         if (rule.Name is { } name && (!name.Contains("{file}", StringComparison.Ordinal) || name.IndexOfAny(['/', '\\']) >= 0)) throw t.Refuse("name", $"\"{name}\"", "a name with {file} in it and without folders, such as \"{file}-side\"");

@@ -19,7 +19,7 @@ static class ShotColumnsReader
         (HousekeepingPlace place, string? name) = PlaceOf(shots);
         var columns = new ShotColumns
         {
-            Place = place, PlaceName = name, Dialect = LayoutReader.Dialect(root), Number = shots.OptionalText("number"), Kind = kind, ProbeOn = probe, AblationOn = ablation,
+            Place = place, PlaceName = name, Dialect = LayoutReader.Dialect(root), Number = shots.OptionalText("number"), Point = shots.OptionalText("point"), Kind = kind, ProbeOn = probe, AblationOn = ablation,
             Condition = condition, OnlyCondition = only, ConditionNames = ConditionNames(root), ProbeMonitor = shots.OptionalText("probe_monitor"),
             AblationMonitor = shots.OptionalText("ablation_monitor"), Detuning = detuning?.Text("column"), DetuningFactor = detuning is null ? 1 : LayoutReader.UnitOf(detuning, Dimension.Frequency),
             KindLabels = kind is null ? [] : KindLabels(root.Table("kinds")),

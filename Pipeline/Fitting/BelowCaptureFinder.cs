@@ -20,19 +20,21 @@ static class BelowCaptureFinder
         LinearEstimate estimate = LinearEstimate.Of(window, response, quoted.Main, seen);
         Interval counts = SignalInterval.Profile(Math.Max(0, estimate.Counts), estimate.Background, estimate.BackgroundError, settings.Confidence);
         double z = Normal.InvCDF(0, 1, 0.5 * (1 + settings.Confidence)), value = Math.Max(0, estimate.Value);
-        double common = z * double.Hypot(RelativeSystematic(quoted, seen), yieldScatter);
+        (double relative, double absolute) = Systematics(quoted, seen);
+        double common = z * double.Hypot(relative, yieldScatter);
         (double lowest, double highest) = (estimate.Unit * counts.Low, estimate.Unit * counts.High);
-        double high = value + double.Hypot(highest - value, common * highest);
+        double high = value + double.Hypot(double.Hypot(highest - value, common * highest), z * absolute);
         // common factors cannot make nothing into something, nor the reverse: a lower end at zero stays
-        double low = lowest == 0 ? 0 : Math.Max(0, value - double.Hypot(value - lowest, common * value));
+        double low = lowest == 0 ? 0 : Math.Max(0, value - double.Hypot(double.Hypot(value - lowest, common * value), z * absolute));
         return new BelowCapture(setup.CaptureSpeed, estimate.Value, new Interval(low, high, settings.Confidence));
     }
 
-    /// <summary>Of the number below where the fit has one, else of the whole number: the efficiency is common to both.</summary>
-    static double RelativeSystematic(EstimatorRun quoted, double[] share)
+    /// <summary>What moves all numbers alike, relative; and what moves molecules across the capture velocity, in molecules, where the fit
+    /// has any there.</summary>
+    static (double Relative, double Absolute) Systematics(EstimatorRun quoted, double[] share)
     {
         Quantity below = quoted.Quantity(r => r.Molecules.Zip(share, (n, s) => n * s).Sum()), all = quoted.Quantity(r => r.Moments.Number);
-        double whole = all.Value > 0 ? all.Systematic / all.Value : 0;
-        return below.Value > 2 * below.Statistical ? Math.Max(whole, below.Systematic / below.Value) : whole;
+        double whole = all.Value > 0 ? all.Systematic / all.Value : 0, own = whole * below.Value;
+        return (whole, below.Value > 2 * below.Statistical ? Math.Sqrt(Math.Max(0, below.Systematic * below.Systematic - own * own)) : 0);
     }
 }

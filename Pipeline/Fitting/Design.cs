@@ -22,11 +22,15 @@ sealed class Design
         // a coupling capacitor makes columns whose sum is nothing
         double[] seen = [.. _columns.Take(Cells).Select(c => c.Sum(Math.Abs))];
         double typical = seen.Order().ElementAt(Cells / 2);
-        Blind = [.. seen.Select(s => s <= BlindShare * typical)];
+        double share = response.Axis.Points.Count > 0 ? BlindInScan : BlindShare;
+        Blind = [.. seen.Select(s => s <= share * typical)];
     }
 
     /// <summary>Cells that leave less than this share of the typical counts in the window are not seen.</summary>
     const double BlindShare = 0.05;
+
+    /// <summary>The same in a scan: beyond its ends molecules leave the wings of their lines, which say nothing of their speed.</summary>
+    const double BlindInScan = 0.35;
 
     /// <summary>[cells] whose molecules come before or after the window: held at zero, and named in the report.</summary>
     public bool[] Blind { get; }

@@ -11,7 +11,7 @@ sealed class FitWindow
     public FitWindow(NetSignal signal, double fromSeconds, double? toSeconds)
     {
         int[] bins = [.. Enumerable.Range(0, signal.Axis.Bins).Where(i =>
-            signal.Axis.EdgeSeconds(i) >= fromSeconds - 1e-12 && signal.Axis.EdgeSeconds(i + 1) <= (toSeconds ?? double.PositiveInfinity) + 1e-12)];
+            signal.Axis.StartSeconds(i) >= fromSeconds - 1e-12 && signal.Axis.EndSeconds(i) <= (toSeconds ?? double.PositiveInfinity) + 1e-12)];
         if (bins.Length < 5)
             throw new DataFaultException($"fit window of condition \"{signal.Condition}\"", $"{bins.Length} bins", "at least 5",
                 "correct fit_from and fit_to in night.toml, or record longer");

@@ -39,6 +39,12 @@ public sealed record Quantity
             : NotDetermined("noise far from the beam outweighs it, in the data or in data that could as well have been recorded");
     }
 
+    /// <summary>In another unit.</summary>
+    public Quantity Times(double factor) => this with
+    {
+        Value = Value * factor, Statistical = Statistical * factor, Systematic = Systematic * factor, Budget = [.. Budget.Select(b => b with { Shift = b.Shift * factor })],
+    };
+
     public static Quantity NotDetermined(string because) =>
         new() { Value = double.NaN, Statistical = double.NaN, Systematic = double.NaN, NotDeterminedBecause = because };
 }

@@ -1,4 +1,3 @@
-using Pipeline.Apparatus;
 using Pipeline.Backgrounds;
 using Pipeline.Reduction;
 
@@ -7,7 +6,11 @@ namespace Pipeline.Fitting;
 /// <summary>The same condition as it could as well have been recorded: blocks of shots of every kind drawn anew, background and all.</summary>
 sealed class Replicas
 {
-    public Replicas(BinnedRun run, NetSignal signal, IBackgroundModel background, Detector detector, FitSettings settings)
+    /// <param name="run">The run.</param>
+    /// <param name="signal">Of the run itself.</param>
+    /// <param name="signalOf">Of a run that was drawn anew.</param>
+    /// <param name="settings">Number and seed.</param>
+    public Replicas(BinnedRun run, NetSignal signal, Func<BinnedRun, NetSignal> signalOf, FitSettings settings)
     {
         BinnedRun own = run with { Groups = [.. run.Groups.Where(g => g.Condition == signal.Condition)] };
         ulong content = Content(signal);
@@ -15,7 +18,7 @@ sealed class Replicas
         Parallel.For(0, Windows.Length, k =>
         {
             var random = new MathNet.Numerics.Random.Xoshiro256StarStar(Seed(settings.Seed, content, k), threadSafe: false);
-            NetSignal drawn = background.Subtract(Resampling.Draw(own, random), signal.Condition, detector);
+            NetSignal drawn = signalOf(Resampling.Draw(own, random));
             Windows[k] = new FitWindow(drawn, settings.FromSeconds, settings.ToSeconds);
         });
     }

@@ -16,13 +16,14 @@ public static class SpectrumFitter
     public static SpectrumOutcome Fit(
         BinnedRun run, string condition, Setup setup, IBackgroundModel background, IResponseMode mode, FitSettings settings)
     {
-        NetSignal signal = background.Subtract(run, condition, setup.Detector);
+        NetSignal SignalOf(BinnedRun r) => ModeSignal.Of(r, condition, background, mode.Scanned, setup.Detector, settings);
+        NetSignal signal = SignalOf(run);
         var window = new FitWindow(signal, settings.FromSeconds, settings.ToSeconds);
-        var replicas = new Replicas(run, signal, background, setup.Detector, settings);
+        var replicas = new Replicas(run, signal, SignalOf, settings);
         double yieldScatter = replicas.YieldScatter(window);
-        int freedom = (run.Find(condition, ShotKind.Signal)?.BlockShots.Length ?? 1) - 1;
+        int freedom = run.Groups.Where(g => g.Condition == condition && g.Kind == ShotKind.Signal).Sum(g => g.BlockShots.Length - 1);
         FlightMap flight = setup.FlightFor(condition);
-        if (flight is AmbiguousFlight) return Ambiguous(signal, flight, setup, yieldScatter, freedom);
+        if (flight is AmbiguousFlight && mode.Scanned != Scanned.Detuning) return Ambiguous(signal, flight, setup, yieldScatter, freedom);
         var grid = new VelocityGrid(settings.VelocityFrom, settings.VelocityTo, settings.VelocityStep);
         Func<Setup, ResponseMatrix> build = s => mode.Build(s, condition, signal.Axis, grid);
         var responses = new ShiftedResponses(setup, build);
@@ -64,19 +65,22 @@ public static class SpectrumFitter
     {
         bool[] blind = new Design(window, response).Blind;
         int slow = Array.FindIndex(blind, b => !b), fast = Array.FindLastIndex(blind, b => !b);
+        string before = response.Axis.Points.Count > 0 ? "are outside the scan" : "come after the fit window", after = response.Axis.Points.Count > 0 ? "are outside the scan" : "come before the fit window";
         if (slow > 0)
             yield return string.Create(CultureInfo.InvariantCulture,
-                $"{condition}: molecules below {response.Grid.Edge(slow):F1} m/s come after the fit window and are not counted");
+                $"{condition}: molecules below {response.Grid.Edge(slow):F1} m/s {before} and are not counted");
         if (fast < blind.Length - 1)
             yield return string.Create(CultureInfo.InvariantCulture,
-                $"{condition}: molecules above {response.Grid.Edge(fast + 1):F1} m/s come before the fit window and are not counted");
+                $"{condition}: molecules above {response.Grid.Edge(fast + 1):F1} m/s {after} and are not counted");
     }
 
     static IEnumerable<string> BlockRemarks(BinnedRun run, string condition)
     {
         foreach (ShotGroup group in run.Groups)
-            if (group.Condition == condition && group.BlockShots.Length == 1)
+            if (group.Condition == condition && group.BlockShots.Length == 1 && group.Point < 0)
                 yield return $"{condition}: a single block of {group.Kind} shots; its scatter between shots is not known and not in the errors";
+        if (run.Groups.Count(g => g.Condition == condition && g.Point >= 0 && g.BlockShots.Length == 1) is > 0 and var single)
+            yield return $"{condition}: {single} points of the scan have a single block of shots; their scatter is not known and not in the errors";
     }
 }
 

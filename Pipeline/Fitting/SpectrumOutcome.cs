@@ -36,6 +36,9 @@ public sealed record VelocitySpectrum
 /// <param name="NotDeterminedBecause">Null where the value stands.</param>
 public sealed record BelowCapture(double CaptureSpeed, double Value, Interval? Interval, string? NotDeterminedBecause = null);
 
+/// <summary>A quantity with its name and unit.</summary>
+public sealed record NamedQuantity(string Name, string Unit, Quantity Quantity);
+
 /// <summary>All that the fits tell of one condition.</summary>
 public sealed record SpectrumOutcome
 {
@@ -52,6 +55,10 @@ public sealed record SpectrumOutcome
     /// <summary>Degrees of freedom of <see cref="YieldScatter"/>: blocks of signal shots less one.</summary>
     public required int YieldFreedom { get; init; }
     public IReadOnlyList<string> Remarks { get; init; } = [];
+    /// <summary>Quantities beside number, mean and spread.</summary>
+    public IReadOnlyList<NamedQuantity> Others { get; init; } = [];
+    /// <summary>[bins] a fit that is no spectrum, counts a shot; null where there is none.</summary>
+    public double[]? Fitted { get; init; }
 
     public Quantity Number => Quoted(s => s.Number);
     public Quantity Mean => Quoted(s => s.Mean);

@@ -37,13 +37,15 @@ public sealed record ShotColumns
     public string? ProbeMonitor { get; init; }
     public string? AblationMonitor { get; init; }
     public string? Detuning { get; init; }
+    /// <summary>Number of the point of a scan.</summary>
+    public string? Point { get; init; }
     /// <summary>Hz in one unit of the detuning column.</summary>
     public double DetuningFactor { get; init; } = 1;
     /// <summary>Labels in the file for signal, no ablation, probe blocked and dark shots, in this order.</summary>
     public required IReadOnlyList<string> KindLabels { get; init; }
 
     /// <summary>Columns of numbers, in the order of <see cref="ShotTable"/>.</summary>
-    internal IReadOnlyList<string?> Numeric => [Number, ProbeMonitor, AblationMonitor, Detuning];
+    internal IReadOnlyList<string?> Numeric => [Number, ProbeMonitor, AblationMonitor, Detuning, Point];
 
     /// <summary>Columns of labels, in the order of <see cref="ShotTable"/>.</summary>
     internal IReadOnlyList<string?> Labels => [Kind, ProbeOn, AblationOn, Condition];

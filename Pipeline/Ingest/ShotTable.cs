@@ -27,7 +27,7 @@ sealed record ShotTable(string Name, ShotColumns Columns, IReadOnlyList<double[]
             bool again = !seen.Add(number);
             if (again && !repeats)
                 throw new DataFaultException(Name, $"shot number {number.ToString(CultureInfo.InvariantCulture)} twice", "each once", "remove the repeated shot, or record the run again");
-            infos[k] = new ShotInfo(number, KindOf(k), ConditionOf(k), Numbers[1]?[k] ?? double.NaN, Numbers[2]?[k] ?? double.NaN, (Numbers[3]?[k] ?? double.NaN) * Columns.DetuningFactor) { Repeated = again };
+            infos[k] = new ShotInfo(number, KindOf(k), ConditionOf(k), Numbers[1]?[k] ?? double.NaN, Numbers[2]?[k] ?? double.NaN, (Numbers[3]?[k] ?? double.NaN) * Columns.DetuningFactor) { Repeated = again, Point = Numbers[4] is { } points ? (int)points[k] : null };
         }
         return count > 0 ? infos : throw new DataFaultException(Name, "no shots", "one row a shot", "record the run again, or export the shot table again");
     }

@@ -17,8 +17,11 @@ namespace Pipeline.Night;
 public sealed class RunWork
 {
     const double ManyCuts = 0.02;
+    static readonly System.Collections.Concurrent.ConcurrentDictionary<string, Lock> Locks = new(StringComparer.Ordinal);
     readonly LabConfiguration _lab;
     readonly Apparatus.Setup _setup;
+    readonly AnalysisSettings _settings;
+    readonly InputFile[] _zeroInputs = [];
     readonly DayFolder _day;
     readonly RunFile _run;
     readonly IReadOnlyList<InputFile> _inputs;
@@ -33,26 +36,56 @@ public sealed class RunWork
     {
         (_lab, _day, _run, Folder) = (lab, day, run, Path.Combine(results, run.Name));
         _setup = lab.SetupFor(run.Rule);
+        _settings = ForMode(lab.Analysis, run.Rule.Mode);
+        string zero = "";
+        if (run.Rule.ZeroFrom is { } pattern && run.Rule.Mode != TransverseFitter.Mode)
+        {
+            (Quantities.Measured value, RunWork across) = ZeroOf(pattern, results);
+            _setup = _setup with { Probe = _setup.Probe with { AxisZero = value } };
+            (zero, _zeroInputs) = (across._fingerprint, [.. across._inputs]);
+        }
         using (IShotSource source = ShotFiles.Open(run.Path, run.Layout, _setup.Detector.Kind))
         {
             _inputs = [.. source.InputFiles.Select(f => Hashes.Of(day.Path, f))];
             _reader = source.Reader;
         }
-        string all = string.Join('\n', [.. _inputs.Select(i => $"{i.Name} {i.Sha256}"), lab.Digest, ProgramVersion.Text, $"{RunAnalysis.NumericalVersion}", $"{run.Rule}"]);
+        string all = string.Join('\n', [.. _inputs.Select(i => $"{i.Name} {i.Sha256}"), lab.Digest, ProgramVersion.Text, $"{RunAnalysis.NumericalVersion}", $"{run.Rule}", zero]);
         _fingerprint = Convert.ToHexStringLower(SHA256.HashData(Encoding.UTF8.GetBytes(all)));
     }
 
     /// <summary>Folder of the run's results.</summary>
     public string Folder { get; }
 
+    static AnalysisSettings ForMode(AnalysisSettings settings, string mode) =>
+        RunAnalysis.IsScan(mode) ? settings with { Reduction = settings.Reduction with { ByPoint = true } } : settings;
+
+    /// <summary>The zero of the frequency axis by the scan across the beam that is nearest before this run in the day.</summary>
+    (Quantities.Measured Zero, RunWork Across) ZeroOf(string pattern, string results)
+    {
+        RunFile[] scans = [.. _day.Runs.Where(r => r.Rule.Mode == TransverseFitter.Mode && FileSystemName.MatchesSimpleExpression(pattern, r.Name, ignoreCase: false))];
+        RunFile scan = scans.LastOrDefault(r => string.CompareOrdinal(r.Name, _run.Name) < 0) ?? scans.FirstOrDefault()
+            ?? throw new DataFaultException(_run.Name, $"no scan across the beam \"{pattern}\"", $"a run of mode \"{TransverseFitter.Mode}\" with such a name in the day's folder", "record one, correct zero_from in night.toml, or state axis_zero of the probe");
+        var across = new RunWork(_lab, _day, scan, results);
+        SpectrumOutcome fit = across.Fit(across.Ingest(out _), out _)[0];
+        Quantity zero = fit.Others.Single(o => o.Name == TransverseFitter.FrequencyZero).Quantity;
+        return zero.NotDeterminedBecause is { } because ? throw new DataFaultException(scan.Name, $"a frequency zero that is not determined: {because}", "a clear scan across the beam", "record it again with more shots")
+            : (new Quantities.Measured(zero.Value, zero.Total), across);
+    }
+
     /// <summary>Shots to sums.</summary>
     public BinnedRun Ingest(out bool reused)
+    {
+        // a scan across the beam may be asked for by several runs at once
+        lock (Locks.GetOrAdd(Folder, _ => new Lock())) return IngestAlone(out reused);
+    }
+
+    BinnedRun IngestAlone(out bool reused)
     {
         BinnedRun? known = ReducedFile.Read(Folder, _fingerprint);
         reused = known is not null;
         if (known is not null) return known;
         using IShotSource source = ShotFiles.Open(_run.Path, _run.Layout, _setup.Detector.Kind);
-        BinnedRun run = Reducer.Reduce(source.Shape, source.Shots, source.ReadBlocks(), _setup.Detector, _lab.Analysis.Reduction);
+        BinnedRun run = Reducer.Reduce(source.Shape, source.Shots, source.ReadBlocks(), _setup.Detector, _settings.Reduction);
         ReducedFile.Write(Folder, _fingerprint, run);
         return run;
     }
@@ -60,10 +93,15 @@ public sealed class RunWork
     /// <summary>Sums to spectra and numbers.</summary>
     public IReadOnlyList<SpectrumOutcome> Fit(BinnedRun run, out bool reused)
     {
+        lock (Locks.GetOrAdd(Folder, _ => new Lock())) return FitAlone(run, out reused);
+    }
+
+    IReadOnlyList<SpectrumOutcome> FitAlone(BinnedRun run, out bool reused)
+    {
         IReadOnlyList<SpectrumOutcome>? known = StageFiles.ReadFits(Folder, _fingerprint);
         reused = known is not null;
         if (known is not null) return known;
-        IReadOnlyList<SpectrumOutcome> fits = WithUncut(run, RunAnalysis.Fit(run, _run.Rule.Mode, _setup, _lab.Analysis));
+        IReadOnlyList<SpectrumOutcome> fits = WithUncut(run, RunAnalysis.Fit(run, _run.Rule.Mode, _setup, _settings));
         StageFiles.WriteFits(Folder, _fingerprint, fits);
         return fits;
     }
@@ -81,14 +119,14 @@ public sealed class RunWork
                 predictions[condition] = new ConditionPrediction(molecules, rule.Normalisation == Normalisation.Relative);
                 files.Add(Hashes.Of(_day.Path, path));
             }
-        (IReadOnlyList<ConditionOutcome> conditions, Comparison.Verdict verdict) = RunAnalysis.Compare(fits, predictions, _setup, _lab.Analysis);
+        (IReadOnlyList<ConditionOutcome> conditions, Comparison.Verdict verdict) = RunAnalysis.Compare(fits, predictions, _setup, _settings);
         var outcome = new RunOutcome
         {
             Name = _run.Name, Mode = _run.Rule.Mode, Tally = ShotTally.Of(run), Conditions = conditions, Verdict = verdict,
             Remarks = [.. run.Remarks, .. fits.SelectMany(f => f.Remarks).Distinct(StringComparer.Ordinal)],
             Provenance = new Provenance
             {
-                Inputs = _inputs, Predictions = files, Configuration = _lab.Digest, Program = ProgramVersion.Text,
+                Inputs = [.. _inputs, .. _zeroInputs], Predictions = files, Configuration = _lab.Digest, Program = ProgramVersion.Text,
                 NumericalVersion = RunAnalysis.NumericalVersion, Seed = _lab.Analysis.Fit.Seed, Reader = _reader,
             },
         };
@@ -102,8 +140,8 @@ public sealed class RunWork
         double share = (double)run.Cuts.Sum(c => c.Numbers.Count) / run.ShotsRead;
         if (share <= ManyCuts) return fits;
         using IShotSource source = ShotFiles.Open(_run.Path, _run.Layout, _setup.Detector.Kind);
-        BinnedRun uncut = Reducer.Reduce(source.Shape, source.Shots, source.ReadBlocks(), _setup.Detector, _lab.Analysis.Reduction.WithoutCuts());
-        IReadOnlyList<SpectrumOutcome> all = RunAnalysis.Fit(uncut, _run.Rule.Mode, _setup, _lab.Analysis);
+        BinnedRun uncut = Reducer.Reduce(source.Shape, source.Shots, source.ReadBlocks(), _setup.Detector, _settings.Reduction.WithoutCuts());
+        IReadOnlyList<SpectrumOutcome> all = RunAnalysis.Fit(uncut, _run.Rule.Mode, _setup, _settings);
         return [.. fits.Select(f => f with { Remarks = [.. f.Remarks, UncutRemark(share, f, all.FirstOrDefault(a => a.Signal.Condition == f.Signal.Condition))] })];
     }
 

@@ -7,6 +7,10 @@ public sealed record ShotGroup
 {
     public required string Condition { get; init; }
     public required ShotKind Kind { get; init; }
+    /// <summary>Point of a scan; -1 where nothing is scanned.</summary>
+    public int Point { get; init; } = -1;
+    /// <summary>Mean laser reading of the kept shots, Hz; NaN where there is none.</summary>
+    public double Detuning { get; init; } = double.NaN;
     /// <summary>[blocks][bins] sums of the samples in each bin.</summary>
     public required double[][] BlockSums { get; init; }
     /// <summary>[blocks] kept shots in each block; weights of a resampled run may be fractional.</summary>
@@ -43,6 +47,22 @@ public sealed record BinnedRun
 
     /// <summary>Names of the conditions, in order.</summary>
     public IReadOnlyList<string> Conditions => [.. Groups.Where(g => g.Kind == ShotKind.Signal).Select(g => g.Condition).Distinct().Order(StringComparer.Ordinal)];
+
+    /// <summary>Signal groups of a condition, one a point, in the order of the laser reading.</summary>
+    public IReadOnlyList<ShotGroup> Scan(string condition) =>
+        [.. Groups.Where(g => g.Condition == condition && g.Kind == ShotKind.Signal && g.Point >= 0).OrderBy(g => g.Detuning).ThenBy(g => g.Point)];
+
+    /// <summary>The points of a scan taken together, as if nothing had been scanned.</summary>
+    public BinnedRun WithoutPoints() => this with
+    {
+        Groups = [.. Groups.GroupBy(g => (g.Condition, g.Kind)).Select(g => g.Count() == 1 ? g.First() with { Point = -1 } : g.First() with
+        {
+            Point = -1, Detuning = double.NaN,
+            BlockSums = [.. g.SelectMany(p => p.BlockSums)], BlockShots = [.. g.SelectMany(p => p.BlockShots)], BlockProbeMonitor = [.. g.SelectMany(p => p.BlockProbeMonitor)],
+            BlockAblationMonitor = [.. g.SelectMany(p => p.BlockAblationMonitor)], BaselineVariance = g.Sum(p => p.BaselineVariance),
+            FullSum = [.. Enumerable.Range(0, g.First().FullSum.Length).Select(i => g.Sum(p => p.FullSum[i]))],
+        })],
+    };
 
     /// <summary>The group of a condition and kind, or null.</summary>
     public ShotGroup? Find(string condition, ShotKind kind) => Groups.FirstOrDefault(g => g.Condition == condition && g.Kind == kind);

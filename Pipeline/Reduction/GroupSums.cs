@@ -3,20 +3,21 @@ using System.Runtime.InteropServices;
 namespace Pipeline.Reduction;
 
 /// <summary>Running sums of one condition and kind. Codes are added as integers, so the order of shots cannot change the result.</summary>
-sealed class GroupSums(string condition, ShotKind kind, RecordShape shape, SignalAxis axis, int shotsPerBlock)
+sealed class GroupSums(string condition, ShotKind kind, int point, RecordShape shape, SignalAxis axis, int shotsPerBlock)
 {
     readonly List<double[]> _sums = [];
     readonly List<double> _shots = [], _probe = [], _ablation = [];
     readonly long[] _codeSum = new long[shape.Samples];
     readonly double[] _valueSum = new double[shape.Samples];
     int _kept;
+    double _detuning;
 
     public string Condition => condition;
     public ShotKind Kind => kind;
 
-    public void Add(ReadOnlySpan<int> codes, double probe, double ablation)
+    public void Add(ReadOnlySpan<int> codes, double probe, double ablation, double detuning)
     {
-        double[] bins = Begin(probe, ablation);
+        double[] bins = Begin(probe, ablation, detuning);
         for (int b = 0; b < bins.Length; b++)
         {
             long sum = 0;
@@ -32,9 +33,9 @@ sealed class GroupSums(string condition, ShotKind kind, RecordShape shape, Signa
     /// <summary>Analog: variance of the summed baselines, V^2.</summary>
     public double BaselineVariance { get; set; }
 
-    public void Add(ReadOnlySpan<double> values, double probe, double ablation)
+    public void Add(ReadOnlySpan<double> values, double probe, double ablation, double detuning)
     {
-        double[] bins = Begin(probe, ablation);
+        double[] bins = Begin(probe, ablation, detuning);
         for (int b = 0; b < bins.Length; b++)
             for (int i = axis.Edges[b]; i < axis.Edges[b + 1]; i++)
             {
@@ -43,8 +44,9 @@ sealed class GroupSums(string condition, ShotKind kind, RecordShape shape, Signa
             }
     }
 
-    double[] Begin(double probe, double ablation)
+    double[] Begin(double probe, double ablation, double detuning)
     {
+        _detuning += detuning;
         if (_kept++ % shotsPerBlock == 0)
         {
             _sums.Add(new double[axis.Bins]);
@@ -63,6 +65,8 @@ sealed class GroupSums(string condition, ShotKind kind, RecordShape shape, Signa
     {
         Condition = condition,
         Kind = kind,
+        Point = point,
+        Detuning = _kept > 0 ? _detuning / _kept : double.NaN,
         BlockSums = [.. _sums.Select(PhysicalBlock)],
         BlockShots = [.. _shots],
         BaselineVariance = BaselineVariance,

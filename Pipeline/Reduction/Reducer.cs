@@ -35,9 +35,9 @@ sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector
     readonly IReadOnlyList<IShotCheck> _checks = ShotChecks.For(settings, shape, allShots);
     /// <summary>Analog samples are summed in volts, less their baseline; counts as recorded.</summary>
     readonly RecordShape _sumShape = shape.Kind == DetectorKind.Analog ? shape with { Scale = 1, Offset = 0 } : shape;
-    readonly double _medianDetuning = MedianDetuning(allShots);
-    readonly Dictionary<(string, ShotKind), int> _recorded = allShots.CountBy(s => (s.Condition, s.Kind)).ToDictionary();
-    readonly Dictionary<(string, ShotKind), GroupSums> _groups = [];
+    readonly ScanPoints _points = new(settings, allShots);
+    readonly Dictionary<(string, ShotKind, int), int> _recorded = [];
+    readonly Dictionary<(string, ShotKind, int), GroupSums> _groups = [];
     readonly SortedDictionary<string, List<long>> _cuts = new(StringComparer.Ordinal);
     readonly TransferLine? _transfer = shape.Kind == DetectorKind.Analog ? new TransferLine(detector, shape.TickSeconds) : null;
     readonly List<ShotInfo> _empty = [];
@@ -63,13 +63,13 @@ sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector
     void AddShot(ShotInfo info, ReadOnlySpan<int> codes)
     {
         int low = System.Numerics.Tensors.TensorPrimitives.Min(codes), high = System.Numerics.Tensors.TensorPrimitives.Max(codes);
-        if (Kept(info, low, high)) Group(info).Add(codes, Probe(info), Ablation(info));
+        if (Kept(info, low, high)) Group(info).Add(codes, Probe(info), Ablation(info), info.DetuningReadback);
     }
 
     void AddShot(ShotInfo info, ReadOnlySpan<double> values)
     {
         double low = System.Numerics.Tensors.TensorPrimitives.Min(values), high = System.Numerics.Tensors.TensorPrimitives.Max(values);
-        if (Kept(info, low, high)) Group(info).Add(values, Probe(info), Ablation(info));
+        if (Kept(info, low, high)) Group(info).Add(values, Probe(info), Ablation(info), info.DetuningReadback);
     }
 
     /// <summary>Analog shots in volts, less their own baseline.</summary>
@@ -95,7 +95,7 @@ sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector
             return;
         }
         GroupSums group = Group(info);
-        group.Add(record.Volts, Probe(info), Ablation(info));
+        group.Add(record.Volts, Probe(info), Ablation(info), info.DetuningReadback);
         group.BaselineVariance += record.BaselineVariance;
         _transfer?.Add(info, record.Volts);
     }
@@ -109,7 +109,7 @@ sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector
             _empty.Add(info);
             return false;
         }
-        var view = new ShotView(info, low, high, _medianDetuning);
+        var view = new ShotView(info, low, high, _points.Median(info));
         foreach (IShotCheck check in _checks)
         {
             if (!check.Cuts(view)) continue;
@@ -125,20 +125,20 @@ sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector
         numbers.Add(number);
     }
 
+    /// <summary>Only molecules see the laser's frequency: shots without them are summed over all points.</summary>
+    (string, ShotKind, int) Key(ShotInfo info) => (info.Condition, info.Kind, info.Kind == ShotKind.Signal ? _points.Of(info) : -1);
+
     GroupSums Group(ShotInfo info)
     {
-        if (!_groups.TryGetValue((info.Condition, info.Kind), out GroupSums? sums))
-            _groups[(info.Condition, info.Kind)] = sums = new GroupSums(info.Condition, info.Kind, _sumShape, axis, ShotsPerBlock(info));
+        if (!_groups.TryGetValue(Key(info), out GroupSums? sums))
+            _groups[Key(info)] = sums = new GroupSums(info.Condition, info.Kind, Key(info).Item3, _sumShape, axis, ShotsPerBlock(info));
         return sums;
     }
 
-    int ShotsPerBlock(ShotInfo info) =>
-        Math.Clamp(_recorded.GetValueOrDefault((info.Condition, info.Kind)) / FewestBlocks, 1, settings.ShotsPerBlock);
-
-    static double MedianDetuning(IReadOnlyList<ShotInfo> shots)
+    int ShotsPerBlock(ShotInfo info)
     {
-        double[] readbacks = [.. shots.Select(s => s.DetuningReadback).Where(double.IsFinite).Order()];
-        return readbacks.Length == 0 ? double.NaN : readbacks[readbacks.Length / 2];
+        if (_recorded.Count == 0) foreach (ShotInfo shot in allShots) _recorded[Key(shot)] = _recorded.GetValueOrDefault(Key(shot)) + 1;
+        return Math.Clamp(_recorded.GetValueOrDefault(Key(info)) / FewestBlocks, 1, settings.ShotsPerBlock);
     }
 
     double Probe(ShotInfo info) => info.ProbeMonitor - detector.ProbeMonitorZero.Value;
@@ -155,7 +155,7 @@ sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector
             DetectorKind = shape.Kind,
             Axis = axis,
             Groups = [.. _groups.Values.Select(g => g.ToGroup())
-                .OrderBy(g => g.Condition, StringComparer.Ordinal).ThenBy(g => g.Kind)],
+                .OrderBy(g => g.Condition, StringComparer.Ordinal).ThenBy(g => g.Kind).ThenBy(g => g.Point)],
             ShotsRead = _read,
             Cuts = [.. _cuts.Select(c => new ShotCut(c.Key, c.Value))],
             Remarks = _remarks,
@@ -167,19 +167,19 @@ sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector
     void JudgeEnd(double plausibleCounts)
     {
         ShotInfo[] end = [.. _empty.TakeLast(Math.Min(_emptyAtEnd, _empty.Count))];
-        double expected = end.GroupBy(s => (s.Condition, s.Kind)).Sum(g => g.Count() * Expected(g.First()));
+        double expected = end.GroupBy(Key).Sum(g => g.Count() * Expected(g.First()));
         if (end.Length < 2 || expected < plausibleCounts) return;
         foreach (ShotInfo shot in end) Cut("never written", shot.Number);
         _empty.RemoveRange(_empty.Count - end.Length, end.Length);
     }
 
-    double Expected(ShotInfo shot) => _groups.TryGetValue((shot.Condition, shot.Kind), out GroupSums? sums) ? SteadyCounts(sums.ToGroup()) : 0;
+    double Expected(ShotInfo shot) => _groups.TryGetValue(Key(shot), out GroupSums? sums) ? SteadyCounts(sums.ToGroup()) : 0;
 
     /// <summary>A counting record without a single count is a missing trigger only where steady light and dark counts would have
     /// shown; else it is a legitimate zero, and cutting it would bias the mean.</summary>
     void JudgeEmptyRecords(double plausibleCounts)
     {
-        foreach (var kind in _empty.GroupBy(s => (s.Condition, s.Kind)))
+        foreach (var kind in _empty.GroupBy(Key))
         {
             double expected = Expected(kind.First());
             if (expected >= plausibleCounts) foreach (ShotInfo shot in kind) Cut("missing trigger", shot.Number);
@@ -190,7 +190,7 @@ sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector
     void KeepEmpty(IReadOnlyList<ShotInfo> shots, double expected)
     {
         int[] nothing = new int[shape.Samples];
-        foreach (ShotInfo shot in shots) Group(shot).Add(nothing, Probe(shot), Ablation(shot));
+        foreach (ShotInfo shot in shots) Group(shot).Add(nothing, Probe(shot), Ablation(shot), shot.DetuningReadback);
         _remarks.Add(string.Create(CultureInfo.InvariantCulture,
             $"{shots.Count} {(shots.Count == 1 ? "record" : "records")} of {shots[0].Condition} without a single count kept: with about {expected:F1} steady counts expected in one, none is no sign of a missing trigger"));
     }

@@ -7,6 +7,10 @@ public sealed record ReductionSettings
     public int ShotsPerBlock { get; init; } = 1;
     /// <summary>Bin width as a share of the time after the trigger.</summary>
     public double RelativeBinWidth { get; init; } = 0.01;
+    /// <summary>Signal shots are summed by the points of a scan.</summary>
+    public bool ByPoint { get; init; }
+    /// <summary>Shots whose laser reads within this of each other are one point, Hz; null: the file numbers its points.</summary>
+    public double? ScanStepHz { get; init; }
     /// <summary>No bin is narrower, s.</summary>
     public double ShortestBinSeconds { get; init; } = 20e-6;
     /// <summary>A shot whose laser reads more than this from the run's median is cut, Hz; null: not checked.</summary>

@@ -23,6 +23,8 @@ public enum ShotKind
 public readonly record struct ShotInfo(
     long Number, ShotKind Kind, string Condition, double ProbeMonitor, double AblationMonitor, double DetuningReadback)
 {
+    /// <summary>Number of the point of a scan; null where the file does not say.</summary>
+    public int? Point { get; init; }
     /// <summary>Whether an earlier shot of the file has the same number.</summary>
     public bool Repeated { get; init; }
 }

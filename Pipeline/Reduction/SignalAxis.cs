@@ -1,14 +1,16 @@
 namespace Pipeline.Reduction;
 
-/// <summary>Time bins of a record, as whole sampling ticks; half-open [edge, next edge).</summary>
+/// <summary>Time bins of a record, as whole sampling ticks, half-open [edge, next edge); in a scan these for each point, one point after the
+/// other.</summary>
 /// <remarks>Edges are integers so that no rounding moves a sample between bins: seconds are derived, never stored.</remarks>
 public sealed record SignalAxis
 {
     /// <param name="originSeconds">Time after the trigger at which the first sample begins, s.</param>
     /// <param name="tickSeconds">Sampling interval, s; positive.</param>
     /// <param name="edges">[bins + 1] ticks after the origin, rising.</param>
+    /// <param name="points">[points] laser readings of a scan, Hz; null or empty: no scan.</param>
     /// <exception cref="ArgumentOutOfRangeException">A tick that is not positive, fewer than two edges, or edges that do not rise.</exception>
-    public SignalAxis(double originSeconds, double tickSeconds, IReadOnlyList<int> edges)
+    public SignalAxis(double originSeconds, double tickSeconds, IReadOnlyList<int> edges, IReadOnlyList<double>? points = null)
     {
         if (!double.IsFinite(originSeconds)) throw new ArgumentOutOfRangeException(nameof(originSeconds), originSeconds, "must be finite");
         if (!(tickSeconds > 0) || !double.IsFinite(tickSeconds)) throw new ArgumentOutOfRangeException(nameof(tickSeconds), tickSeconds, "must be positive");
@@ -18,23 +20,36 @@ public sealed record SignalAxis
         OriginSeconds = originSeconds;
         TickSeconds = tickSeconds;
         Edges = edges;
+        Points = points ?? [];
     }
 
     public double OriginSeconds { get; }
     public double TickSeconds { get; }
     public IReadOnlyList<int> Edges { get; }
 
-    /// <summary>Number of bins.</summary>
-    public int Bins => Edges.Count - 1;
+    /// <summary>[points] laser readings of a scan, Hz; empty where there is none.</summary>
+    public IReadOnlyList<double> Points { get; }
 
-    /// <summary>Lower edge of <paramref name="bin"/> (or, for bin = Bins, the upper end), s after the trigger.</summary>
-    public double EdgeSeconds(int bin) => OriginSeconds + Edges[bin] * TickSeconds;
+    /// <summary>Number of time bins.</summary>
+    public int TimeBins => Edges.Count - 1;
+
+    /// <summary>Number of bins: of time, times the points of a scan.</summary>
+    public int Bins => TimeBins * Math.Max(1, Points.Count);
+
+    /// <summary>A time edge, 0 to <see cref="TimeBins"/>, s after the trigger.</summary>
+    public double EdgeSeconds(int edge) => OriginSeconds + Edges[edge] * TickSeconds;
+
+    /// <summary>Lower edge of a bin, s after the trigger.</summary>
+    public double StartSeconds(int bin) => EdgeSeconds(bin % TimeBins);
+
+    /// <summary>Upper edge of a bin, s after the trigger.</summary>
+    public double EndSeconds(int bin) => EdgeSeconds(bin % TimeBins + 1);
 
     /// <summary>Width of a bin, s.</summary>
-    public double WidthSeconds(int bin) => (Edges[bin + 1] - Edges[bin]) * TickSeconds;
+    public double WidthSeconds(int bin) => (Edges[bin % TimeBins + 1] - Edges[bin % TimeBins]) * TickSeconds;
 
     /// <summary>Middle of a bin, s after the trigger.</summary>
-    public double CentreSeconds(int bin) => OriginSeconds + 0.5 * (Edges[bin] + Edges[bin + 1]) * TickSeconds;
+    public double CentreSeconds(int bin) => OriginSeconds + 0.5 * (Edges[bin % TimeBins] + Edges[bin % TimeBins + 1]) * TickSeconds;
 
     /// <summary>All edges in seconds after the trigger, [bins + 1].</summary>
     public double[] EdgesInSeconds() => [.. Edges.Select(e => OriginSeconds + e * TickSeconds)];

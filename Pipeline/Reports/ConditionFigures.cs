@@ -12,6 +12,7 @@ static class ConditionFigures
     public static Markup Signal(ConditionOutcome c)
     {
         NetSignal signal = c.Fit.Signal;
+        if (signal.Axis.Points.Count > 0) return ScanFigures.Signal(c);
         SignalAxis axis = signal.Axis;
         VelocitySpectrum? spectrum = c.Fit.Spectra.Count > 0 ? c.Fit.Spectra[0] : null;
         double[] times = PerBin(axis, i => 1e3 * axis.CentreSeconds(i)), width = PerBin(axis, i => 1e3 * axis.WidthSeconds(i));

@@ -53,18 +53,32 @@ public static class RunPage
     static (string, string)[] SignalKey(ConditionOutcome c) =>
     [
         ("point", "measured, background subtracted"),
-        .. c.Fit.Spectra.Count > 0 ? [("fit", "fitted spectrum, folded back")] : Array.Empty<(string, string)>(),
+        .. c.Fit.Fitted is not null ? [("fit", "fitted lines")] : c.Fit.Spectra.Count > 0 ? [("fit", "fitted spectrum, folded back")] : Array.Empty<(string, string)>(),
         .. c.Prediction is not null ? [("prediction", c.RelativeOnly ? "prediction (its number is not stated)" : "prediction, folded through the instrument"), ("simulated", "its simulation statistics")] : Array.Empty<(string, string)>(),
     ];
 
     static Markup NumbersTable(ConditionOutcome c) => Html.Of($"""
         <div class="scroll"><table><tr><th>quantity</th><th>measured</th><th>predicted</th></tr>
+        {c.Fit.Others.Select(o => Shown(o)).Select(o => Row(o.Name, o.Quantity, " " + o.Unit, null))}
+        {(c.Fit.Spectra.Count == 0 && c.Fit.Others.Count > 0 ? Markup.None : MainRows(c))}
+        </table></div>
+        """);
+
+    static Markup MainRows(ConditionOutcome c) => Html.Of($"""
         {Row("molecules per shot", c.Fit.Number, "", c.RelativeOnly ? null : c.Prediction?.Molecules)}
         {Row("mean velocity", c.Fit.Mean, " m/s", c.Prediction?.MeanSpeed)}
         {Row("velocity spread", c.Fit.Spread, " m/s", null)}
         <tr><td>molecules per shot below {Numbers.Digits(c.Fit.Below.CaptureSpeed)} m/s</td><td>{BelowText(c.Fit.Below)}</td><td>{Predicted(c.RelativeOnly ? null : c.Prediction?.BelowCapture, "")}</td></tr>
-        </table></div>
         """);
+
+    /// <summary>In the unit that people use.</summary>
+    static NamedQuantity Shown(NamedQuantity q) => q.Unit switch
+    {
+        "Hz" => q with { Unit = "MHz", Quantity = q.Quantity.Times(1e-6) },
+        "K" => q with { Unit = "mK", Quantity = q.Quantity.Times(1e3) },
+        "rad" => q with { Unit = "mrad", Quantity = q.Quantity.Times(1e3) },
+        _ => q,
+    };
 
     static Markup Row(string name, Quantity q, string unit, double? predicted) => Html.Of(
         $"<tr><td>{name}</td><td>{(q.NotDeterminedBecause is { } because ? $"not determined, because {because}" : Numbers.WithErrors(q) + unit)}</td><td>{Predicted(predicted, unit)}</td></tr>");

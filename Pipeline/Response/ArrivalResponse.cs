@@ -10,6 +10,7 @@ namespace Pipeline.Response;
 public sealed class ArrivalResponse : IResponseMode
 {
     public string Name => "arrival";
+    public Scanned Scanned => Scanned.Nothing;
 
     public ResponseMatrix Build(Setup setup, string condition, SignalAxis axis, VelocityGrid grid)
     {
@@ -38,10 +39,16 @@ sealed class ArrivalCells
     readonly DetectionYield _yield;
     readonly TransitProfile _transit;
     readonly double _detail;
+    readonly bool _alike;
     ArrivalFront _slow, _fast;
 
-    public ArrivalCells(Setup setup, FlightMap flight, SignalAxis axis)
+    /// <param name="setup">The instrument.</param>
+    /// <param name="flight">Speed to flight time.</param>
+    /// <param name="axis">Time bins.</param>
+    /// <param name="alike">Every molecule counts one, whatever its speed: when molecules arrive, not how bright they are.</param>
+    public ArrivalCells(Setup setup, FlightMap flight, SignalAxis axis, bool alike = false)
     {
+        _alike = alike;
         _emission = FilteredEmission.Of(setup.Emission, setup.Detector.TimeConstant.Value);
         _flight = flight;
         _edges = [.. axis.EdgesInSeconds().Select(e => e + setup.Beamline.TriggerOffset.Value)];
@@ -72,9 +79,9 @@ sealed class ArrivalCells
     /// <summary>Adds to each edge the counts that come before it, from molecules whose flight time is even between both fronts.</summary>
     void AddSlice(double speed, double share, double[] before)
     {
-        double counts = share * _yield.CountsAt(speed);
+        double counts = _alike ? share : share * _yield.CountsAt(speed);
         Span<double> weights = stackalloc double[TransitProfile.Count];
-        _transit.Weights(_yield.PumpingAt(speed), weights);
+        _transit.Weights(_alike ? 0 : _yield.PumpingAt(speed), weights);
         for (int k = 0; k < weights.Length; k++)
         {
             double part = counts * weights[k], early = _fast.Arrival(k), width = _slow.Arrival(k) - early;

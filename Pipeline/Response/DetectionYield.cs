@@ -41,23 +41,35 @@ public sealed class DetectionYield
     public double PumpingAt(double speed) =>
         _setup.Species.PhotonLimit is { } limit ? Exposure(speed, -_setup.Species.Lines[0].OffsetHz) / limit.Value : 0;
 
-    double Photons(double x) =>
-        _setup.Species.PhotonLimit is { } limit ? -limit.Value * double.ExpM1(-x / limit.Value) : x;
+    /// <summary>Nodes and weights of what spreads the detuning, Hz.</summary>
+    public (double Shift, double Weight)[] Spread => _spread;
+
+    double Photons(double x) => Photons(x, _setup.Species.PhotonLimit?.Value);
+
+    /// <summary>Mean photons for an integral of the scattering rate.</summary>
+    /// <param name="x">The integral.</param>
+    /// <param name="limit">Photons before the molecule goes dark; null: no limit.</param>
+    public static double Photons(double x, double? limit) => limit is { } most ? -most * double.ExpM1(-x / most) : x;
 
     /// <summary>Integral of the scattering rate over the transit.</summary>
     double Exposure(double speed, double shift)
     {
+        double doppler = speed * Math.Cos(_setup.Probe.Angle.Value) / _setup.Species.Wavelength.Value;
+        return ExposureTimesSpeed(_setup.Probe.Detuning.Value + shift - doppler) / speed;
+    }
+
+    /// <summary>Integral of the scattering rate along the beam, m/s, for a molecule that sees this detuning, Hz.</summary>
+    public double ExposureTimesSpeed(double delta)
+    {
         Probe probe = _setup.Probe;
-        double doppler = speed * Math.Cos(probe.Angle.Value) / _setup.Species.Wavelength.Value;
-        double delta = probe.Detuning.Value + shift - doppler;
-        if (probe.Shape == ProbeShape.TopHat) return Rate(1, delta) * probe.Width.Value / speed;
+        if (probe.Shape == ProbeShape.TopHat) return Rate(1, delta) * probe.Width.Value;
         double sum = 0, reach = 2.5 * probe.Width.Value;
         for (int k = 0; k < Across.Order; k++)
         {
             double z = reach * Across.GetAbscissa(k), w = probe.Width.Value;
             sum += reach * Across.GetWeight(k) * Rate(Math.Exp(-2 * z * z / (w * w)), delta);
         }
-        return sum / speed;
+        return sum;
     }
 
     /// <summary>Scattering rate, 1/s, where the intensity is this share of the peak.</summary>

@@ -35,6 +35,7 @@ static class ReducedFile
         tree.Dataset("block_shots", group.BlockShots);
         tree.Dataset("block_probe_monitor_v", group.BlockProbeMonitor);
         tree.Dataset("block_ablation_monitor_v", group.BlockAblationMonitor);
+        tree.Dataset("point_and_detuning_hz", new[] { group.Point, group.Detuning });
         tree.Dataset("baseline_variance_v2", new[] { group.BaselineVariance });
         tree.Dataset("full_sum", group.FullSum);
     }
@@ -74,9 +75,10 @@ static class ReducedFile
     static ShotGroup ReadGroup(IHdf5File file, string at, string condition, ShotKind kind, int bins)
     {
         double[] shots = file.ReadNumbers($"{at}/block_shots"), sums = file.ReadReals($"{at}/block_sums", 0, shots.Length);
+        double[] point = file.ReadNumbers($"{at}/point_and_detuning_hz");
         return new ShotGroup
         {
-            Condition = condition, Kind = kind, BlockShots = shots,
+            Condition = condition, Kind = kind, Point = (int)point[0], Detuning = point[1], BlockShots = shots,
             BlockSums = [.. Enumerable.Range(0, shots.Length).Select(b => sums[(b * bins)..((b + 1) * bins)])],
             BlockProbeMonitor = file.ReadNumbers($"{at}/block_probe_monitor_v"),
             BlockAblationMonitor = file.ReadNumbers($"{at}/block_ablation_monitor_v"),

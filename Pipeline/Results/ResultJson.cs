@@ -33,6 +33,12 @@ static class ResultJson
         ["mean_velocity_m_per_s"] = Quantity(c.Fit.Mean),
         ["spread_m_per_s"] = Quantity(c.Fit.Spread),
         ["below_capture"] = Below(c.Fit.Below),
+        ["others"] = new JsonObject(c.Fit.Others.Select(o =>
+        {
+            JsonObject quantity = Quantity(o.Quantity);
+            quantity["unit"] = o.Unit;
+            return KeyValuePair.Create(o.Name, (JsonNode?)quantity);
+        })),
         ["estimators"] = new JsonObject(c.Fit.Spectra.Select(s => KeyValuePair.Create(s.Estimator, (JsonNode?)Estimator(s)))),
         ["yield_scatter"] = Number(c.Fit.YieldScatter),
         ["prediction"] = c.Prediction is not { } p ? null : new JsonObject

@@ -29,15 +29,15 @@ static class SpectrumFiles
     /// <summary>One row a time bin: what was measured, what the fit and the prediction say of it. Counts a shot, dead time undone.</summary>
     public static string SignalCsv(RunOutcome run)
     {
-        var text = new StringBuilder("condition,low_s,high_s,net_counts_per_shot,error,background_counts_per_shot,refolded_fit_counts_per_shot,predicted_counts_per_shot,prediction_error\n");
+        var text = new StringBuilder("condition,low_s,high_s,net_counts_per_shot,error,background_counts_per_shot,refolded_fit_counts_per_shot,predicted_counts_per_shot,prediction_error,laser_reading_hz\n");
         foreach (ConditionOutcome c in run.Conditions)
         {
             SignalAxis axis = c.Fit.Signal.Axis;
             double[] net = c.Fit.Signal.NetPerShot(), error = c.Fit.Signal.NetError();
             for (int i = 0; i < axis.Bins; i++)
-                Row(text, [c.Name], axis.EdgeSeconds(i), axis.EdgeSeconds(i + 1), net[i], error[i],
-                    c.Fit.Signal.Background[i] / (c.Fit.Signal.Live[i] * c.Fit.Signal.Shots), c.Fit.Spectra.Count > 0 ? c.Fit.Spectra[0].Refolded[i] : double.NaN,
-                    c.Prediction?.Signal[i] ?? double.NaN, c.Prediction is { } p ? Math.Sqrt(p.Variance[i]) : double.NaN);
+                Row(text, [c.Name], axis.StartSeconds(i), axis.EndSeconds(i), net[i], error[i],
+                    c.Fit.Signal.Background[i] / (c.Fit.Signal.Live[i] * c.Fit.Signal.Shots), Fit(c)?[i] ?? double.NaN,
+                    c.Prediction?.Signal[i] ?? double.NaN, c.Prediction is { } p ? Math.Sqrt(p.Variance[i]) : double.NaN, axis.Points.Count > 0 ? axis.Points[i / axis.TimeBins] : double.NaN);
         }
         return text.ToString();
     }
@@ -75,12 +75,26 @@ static class SpectrumFiles
 
     static void Signal(Hdf5Tree group, ConditionOutcome c)
     {
-        group.Attribute("NX_class", "NXdata").Attribute("signal", "net").Attribute("axes", new[] { "time" });
-        group.Dataset("time", c.Fit.Signal.Axis.EdgesInSeconds(), ("units", "s"), ("long_name", "time after trigger (s)"));
-        group.Dataset("net", c.Fit.Signal.NetPerShot(), ("units", "count"), ("long_name", "counts per shot in the bin"));
-        group.Dataset("net_errors", c.Fit.Signal.NetError(), ("units", "count"));
-        if (c.Fit.Spectra.Count > 0) group.Dataset("refolded_fit", c.Fit.Spectra[0].Refolded, ("units", "count"));
+        SignalAxis axis = c.Fit.Signal.Axis;
+        string[] axes = axis.Points.Count == 0 ? ["time"] : axis.TimeBins == 1 ? ["laser_reading"] : ["laser_reading", "time"];
+        group.Attribute("NX_class", "NXdata").Attribute("signal", "net").Attribute("axes", axes);
+        group.Dataset("time", axis.EdgesInSeconds(), ("units", "s"), ("long_name", "time after trigger (s)"));
+        if (axis.Points.Count > 0) group.Dataset("laser_reading", axis.Points.ToArray(), ("units", "Hz"), ("long_name", "laser reading (Hz)"));
+        group.Dataset("net", Shaped(axis, c.Fit.Signal.NetPerShot()), ("units", "count"), ("long_name", "counts per shot in the bin"));
+        group.Dataset("net_errors", Shaped(axis, c.Fit.Signal.NetError()), ("units", "count"));
+        if (Fit(c) is { } fit) group.Dataset("refolded_fit", Shaped(axis, fit), ("units", "count"));
         if (c.Prediction is { } p) group.Dataset("prediction", p.Signal, ("units", "count"));
+    }
+
+    static double[]? Fit(ConditionOutcome c) => c.Fit.Spectra.Count > 0 ? c.Fit.Spectra[0].Refolded : c.Fit.Fitted;
+
+    /// <summary>[points, times] for a map, [bins] else.</summary>
+    static Array Shaped(SignalAxis axis, double[] bins)
+    {
+        if (axis.Points.Count == 0 || axis.TimeBins == 1) return bins;
+        var map = new double[axis.Points.Count, axis.TimeBins];
+        Buffer.BlockCopy(bins, 0, map, 0, bins.Length * sizeof(double));
+        return map;
     }
 
     static double[] Again(VelocitySpectrum s) => s.Resolution is { } r

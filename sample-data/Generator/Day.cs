@@ -32,8 +32,15 @@ public static class Day
         yield return ("1310-slowed.h5", new Entry(Nature with { WorkingStages = 39 }, Usual, alternating, 15));
         yield return ("1402-slowed.h5", new Entry(Nature, Usual with { Emitted = 0.6 * Usual.Emitted }, alternating, 16));
         yield return ("1515-weak.h5", new Entry(Nature, Usual, alternating with { Signal = 4, NoAblation = 3, ProbeBlocked = 2, Dark = 2 }, 17));
+        // the probe is moved to 45 degrees; its axis reads 4 MHz on the line, which the scan across the beam tells
+        yield return ("1530-across.h5", new Entry(Nature with { AxisZero = 4e6 }, Usual,
+            new RunPlan { Conditions = Off, Signal = 100, NoAblation = 25, ProbeBlocked = 12, Dark = 8, Step = 20e-6, Samples = 2050, Scan = Steps(-24e6, 24e6, 25) }, 21));
+        yield return ("1545-doppler.h5", new Entry(Nature with { AxisZero = 4e6, Angle = Math.PI / 4 }, Usual,
+            new RunPlan { Conditions = Both, Signal = 144, NoAblation = 36, ProbeBlocked = 18, Dark = 12, Step = 20e-6, Samples = 2050, Scan = Steps(0, 245e6, 36) }, 22));
         yield return ("1600-slowed.h5", new Entry(Nature, Usual, alternating with { Signal = 40 }, 18, KeepShare: 0.6));
     }
+
+    static double[] Steps(double from, double to, int points) => [.. Enumerable.Range(0, points).Select(k => from + (to - from) * k / (points - 1))];
 
     /// <summary>What nature did, by run and condition.</summary>
     public static object Truths() => new

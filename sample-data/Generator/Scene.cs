@@ -26,6 +26,12 @@ public sealed record Scene
     public double Acceptance { get; init; } = 4e-3;
     public double ProbeWidth { get; init; } = 2.00e-3;
     public double Saturation { get; init; } = 1.10;
+    /// <summary>Between laser and beam, rad.</summary>
+    public double Angle { get; init; } = Math.PI / 2;
+    /// <summary>Each molecule is in the level of one line: offset, Hz, and share.</summary>
+    public (double Offset, double Share)[] Lines { get; init; } = [(0, 1)];
+    /// <summary>What the laser reads on the line, Hz.</summary>
+    public double AxisZero { get; init; }
     /// <summary>Rms, from shot to shot, Hz.</summary>
     public double LaserJitter { get; init; } = 0.6e6;
     public double Efficiency { get; init; } = 1.60e-3;

@@ -11,7 +11,11 @@ public enum Kind
 
 /// <summary>What a shot records.</summary>
 /// <param name="Counts">[samples].</param>
-public sealed record Shot(int Number, Kind Kind, string Condition, double ProbeMonitor, double AblationMonitor, double Detuning, short[] Counts);
+public sealed record Shot(int Number, Kind Kind, string Condition, double ProbeMonitor, double AblationMonitor, double Detuning, short[] Counts)
+{
+    /// <summary>Point of a scan.</summary>
+    public int Point { get; init; }
+}
 
 /// <summary>A shot that goes wrong.</summary>
 public enum Mishap
@@ -36,6 +40,8 @@ public sealed record RunPlan
     public int Samples { get; init; } = 4100;
     /// <summary>Yield falls by this share over the run.</summary>
     public double Decay { get; init; }
+    /// <summary>Laser frequencies of a scan, one after the other over the run, Hz from the line; empty: the laser stays on the line.</summary>
+    public double[] Scan { get; init; } = [];
     /// <summary>Shot numbers that go wrong.</summary>
     public IReadOnlyDictionary<int, Mishap> Mishaps { get; init; } = new Dictionary<int, Mishap>();
 }
@@ -70,7 +76,8 @@ public static class Simulate
         Mishap mishap = plan.Mishaps.GetValueOrDefault(number);
         double power = lit ? 1 + 0.03 * Math.Sin(2 * Math.PI * progress) : 0;
         double yield = fired ? Math.Exp(YieldScatter * draw.Normal() - 0.5 * YieldScatter * YieldScatter) * (1 - plan.Decay * progress) : 0;
-        double detuning = scene.LaserJitter * draw.Normal() + (mishap == Mishap.Unlocked ? 450e6 : 0);
+        int point = (int)(progress * plan.Scan.Length);
+        double detuning = scene.LaserJitter * draw.Normal() + (mishap == Mishap.Unlocked ? 450e6 : 0) + (plan.Scan.Length > 0 ? plan.Scan[point] : 0);
         var times = new List<double>();
         if (lit && fired) Molecules(scene, beam, draw, condition == "on", yield, detuning, power, times);
         double span = plan.Samples * plan.Step;
@@ -78,7 +85,7 @@ public static class Simulate
         if (fired) for (int f = 0; f < scene.FlashCounts.Length; f++) Flash(draw, scene.FlashCounts[f] * yield, scene.FlashTimes[f], times);
         short[] counts = mishap == Mishap.NoTrigger ? new short[plan.Samples] : Record(scene, plan, times);
         return new Shot(number, kind, condition, scene.ProbeMonitorZero + power + (lit ? ProbeNoise : 0.002) * draw.Normal(),
-            scene.AblationMonitorZero + yield * (1 + AblationNoise * draw.Normal()), detuning + 0.2e6 * draw.Normal(), counts);
+            scene.AblationMonitorZero + yield * (1 + AblationNoise * draw.Normal()), detuning + scene.AxisZero + 0.2e6 * draw.Normal(), counts) { Point = point };
     }
 
     static void Molecules(Scene scene, Beam beam, Draw draw, bool on, double yield, double detuning, double power, List<double> times)

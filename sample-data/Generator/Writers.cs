@@ -22,19 +22,17 @@ public static class Writers
             datasetCreation: new H5DatasetCreation(Filters: [ShuffleFilter.Id, DeflateFilter.Id]));
         foreach ((string key, object value) in ((string, object)[])[("t_start_s", plan.Start), ("dt_s", plan.Step), ("scale", 1.0), ("offset", 0.0), ("unit", "count")])
             data.Attributes[key] = value;
-        new H5File
+        var housekeeping = new H5Group
         {
-            ["fluorescence"] = data,
-            ["shots"] = new H5Group
-            {
-                ["shot"] = shots.Select(s => (long)s.Number).ToArray(),
-                ["kind"] = shots.Select(s => NameOf(s.Kind)).ToArray(),
-                ["decelerator"] = shots.Select(s => s.Condition).ToArray(),
-                ["probe_monitor_v"] = shots.Select(s => Math.Round(s.ProbeMonitor, 5)).ToArray(),
-                ["ablation_monitor_v"] = shots.Select(s => Math.Round(s.AblationMonitor, 5)).ToArray(),
-                ["detuning_readback_hz"] = shots.Select(s => Math.Round(s.Detuning)).ToArray(),
-            },
-        }.Write(path);
+            ["shot"] = shots.Select(s => (long)s.Number).ToArray(),
+            ["kind"] = shots.Select(s => NameOf(s.Kind)).ToArray(),
+            ["decelerator"] = shots.Select(s => s.Condition).ToArray(),
+            ["probe_monitor_v"] = shots.Select(s => Math.Round(s.ProbeMonitor, 5)).ToArray(),
+            ["ablation_monitor_v"] = shots.Select(s => Math.Round(s.AblationMonitor, 5)).ToArray(),
+            ["detuning_readback_hz"] = shots.Select(s => Math.Round(s.Detuning)).ToArray(),
+        };
+        if (plan.Scan.Length > 0) housekeeping["point"] = shots.Select(s => s.Point).ToArray();
+        new H5File { ["fluorescence"] = data, ["shots"] = housekeeping }.Write(path);
     }
 
     /// <summary>CSV with one column a shot, and a table of shots beside it.</summary>

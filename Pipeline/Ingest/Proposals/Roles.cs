@@ -19,6 +19,7 @@ sealed class Roles
             else if (n.Contains("ABLATION", StringComparison.Ordinal) && monitor) _found.TryAdd("ablation_monitor", name);
             else if (n.Contains("PROBE", StringComparison.Ordinal) && IsSwitch(n)) _found.TryAdd("probe_on", name);
             else if (n.Contains("ABLATION", StringComparison.Ordinal) && IsSwitch(n)) _found.TryAdd("ablation_on", name);
+            else if (n is "POINT" or "SCAN_POINT" || n.EndsWith("/POINT", StringComparison.Ordinal) || n.EndsWith("/SCAN_POINT", StringComparison.Ordinal)) _found.TryAdd("point", name);
             else if (n.Contains("DETUNING", StringComparison.Ordinal)) _found.TryAdd("detuning", name);
             else if (n.EndsWith("KIND", StringComparison.Ordinal) || n.EndsWith("SHOT_TYPE", StringComparison.Ordinal)) _found.TryAdd("kind", name);
             else if (n.Contains("DECELERATOR", StringComparison.Ordinal) || n.EndsWith("CONDITION", StringComparison.Ordinal)) _found.TryAdd("condition", name);
@@ -51,6 +52,7 @@ sealed class Roles
         string? where = condition ?? Of("condition");
         if (where is null) lines.Add("only_condition = \"off\"");
         else Add("condition", where);
+        Add("point", Of("point"));
         Add("probe_monitor", Of("probe_monitor"));
         Add("ablation_monitor", Of("ablation_monitor"));
         if (Of("detuning") is { } detuning) lines.Add($"detuning = {{ column = {TomlText.Quote(detuning)}, unit = \"{FrequencyUnit(detuning)}\" }}");

@@ -1,0 +1,56 @@
+using Pipeline.Apparatus;
+
+namespace Pipeline.Response;
+
+/// <summary>Counts that one molecule leaves at each point of a laser scan.</summary>
+/// <remarks>Photons at each detuning are counted by the depletion of the molecule there, not by a scaled line: pumping makes lines wider and
+/// flat. The rate along the transit is tabulated once against detuning, in steps of a hundredth of the natural width.</remarks>
+sealed class ScanYield
+{
+    /// <summary>Places in a cell at which counts are averaged.</summary>
+    const int PerCell = 4;
+    readonly Setup _setup;
+    readonly double[] _lasers;
+    readonly double _low, _step;
+    readonly double[] _exposure;
+    readonly (double Shift, double Weight)[] _spread;
+
+    /// <param name="setup">The instrument.</param>
+    /// <param name="points">[points] laser readings, Hz.</param>
+    /// <param name="fastest">Highest speed that is asked for, m/s.</param>
+    public ScanYield(Setup setup, IReadOnlyList<double> points, double fastest)
+    {
+        _setup = setup;
+        _lasers = [.. points.Select(p => p - setup.Probe.AxisZero.Value)];
+        var yield = new DetectionYield(setup);
+        _spread = yield.Spread;
+        double doppler = Math.Abs(fastest * Math.Cos(setup.Probe.Angle.Value) / setup.Species.Wavelength.Value), lines = setup.Species.Lines.Max(l => Math.Abs(l.OffsetHz));
+        double most = _lasers.Max(Math.Abs) + doppler + lines + _spread.Max(s => Math.Abs(s.Shift));
+        _step = setup.Species.NaturalLinewidth.Value / 100;
+        _low = -most - 2 * _step;
+        _exposure = [.. Enumerable.Range(0, (int)Math.Ceiling(2 * -_low / _step) + 2).Select(k => yield.ExposureTimesSpeed(_low + k * _step))];
+    }
+
+    /// <summary>[points] counts of a molecule that is evenly in [from, to) m/s.</summary>
+    public double[] Counts(double from, double to)
+    {
+        var counts = new double[_lasers.Length];
+        double efficiency = _setup.Detector.Efficiency.Value, lines = _setup.Species.Lines.Sum(l => l.Weight);
+        for (int k = 0; k < PerCell; k++)
+        {
+            double speed = from + (k + 0.5) / PerCell * (to - from), doppler = speed * Math.Cos(_setup.Probe.Angle.Value) / _setup.Species.Wavelength.Value;
+            for (int p = 0; p < counts.Length; p++)
+                foreach (SpectralLine line in _setup.Species.Lines)
+                    foreach ((double shift, double weight) in _spread)
+                        counts[p] += efficiency / PerCell * line.Weight / lines * weight * DetectionYield.Photons(ExposureAt(_lasers[p] + shift - line.OffsetHz - doppler) / speed, _setup.Species.PhotonLimit?.Value);
+        }
+        return counts;
+    }
+
+    double ExposureAt(double delta)
+    {
+        double place = (delta - _low) / _step;
+        int k = (int)place;
+        return _exposure[k] + (place - k) * (_exposure[k + 1] - _exposure[k]);
+    }
+}
