@@ -46,6 +46,42 @@ public class CoverageTests(ITestOutputHelper output)
         Assert.True(below >= 0.9 * Runs - 3 * Math.Sqrt(0.09 * Runs), $"{below} of {Runs}");
     }
 
+    /// <summary>Laser scans at 45 degrees with two lines, some hundred counts a condition, and the same beam in every run.</summary>
+    [Theory]
+    [InlineData("doppler", 2e-3, 45e-6)]
+    [InlineData("map", 2e-3, 45e-6)]
+    [InlineData("map", 2e-3, 1.5e-3)]
+    public void Fit_ScanEnsemble_PullsAreNormal(string mode, double efficiency, double tail)
+    {
+        LabConfiguration lab = ConfigurationReader.Read(Path.Combine(Repository.Root, "config"));
+        var scene = new Scene { Angle = Math.PI / 4, Efficiency = efficiency, EmissionTail = tail, Lines = [(-9e6, 0.6), (14e6, 0.4)] };
+        var setup = lab.Setup with
+        {
+            Species = lab.Setup.Species with { Lines = [new(-9e6, 0.6), new(14e6, 0.4)] },
+            Emission = new ExponentialGaussianEmission { Delay = new(scene.EmissionDelay), Width = new(scene.EmissionWidth), Tail = new(tail) },
+            Detector = lab.Setup.Detector with { Efficiency = new(efficiency) }, Probe = lab.Probes["angled"],
+        };
+        var settings = new AnalysisSettings
+        {
+            Background = "steady", Reduction = new ReductionSettings { ShotsPerBlock = 5, ByPoint = true }, Comparison = lab.Analysis.Comparison,
+            Fit = new FitSettings { FromSeconds = 1.5e-3, VelocityFrom = 6, VelocityTo = 246, VelocityStep = 4, Replicas = 60 },
+        };
+        var plan = new RunPlan { Conditions = ["off"], Signal = 144, NoAblation = 36, ProbeBlocked = 18, Dark = 12, Step = 20e-6, Samples = 2050, Scan = [.. Enumerable.Range(0, 36).Select(k => -20e6 + 7.5e6 * k)] };
+        Truth truth = Truth.Of(scene, Day.Usual, false, lab.Setup.CaptureSpeed, 5);
+        int runs = Math.Max(12, Runs / 2);
+        var (number, mean, errors) = (new double[runs], new double[runs], new double[runs]);
+        for (int k = 0; k < runs; k++)
+        {
+            SpectrumOutcome found = RunAnalysis.Fit(Reduce(Simulate.Run(scene, Day.Usual, plan, 3000 + k), plan, setup, settings), mode, setup, settings).Single();
+            number[k] = (found.Number.Value - truth.Molecules) / found.Number.Statistical;
+            mean[k] = (found.Mean.Value - truth.MeanSpeed) / found.Mean.Statistical;
+            errors[k] = found.Mean.Statistical;
+        }
+        Check($"{mode} number", number);
+        Check($"{mode} mean velocity", mean);
+        output.WriteLine($"error of the mean velocity: {string.Join(", ", errors.Order().Select(e => $"{e:F1}"))} m/s");
+    }
+
     /// <summary>Mean within four standard errors of zero, width within four of one.</summary>
     void Check(string name, double[] pulls)
     {
@@ -58,7 +94,7 @@ public class CoverageTests(ITestOutputHelper output)
     static BinnedRun Reduce(IReadOnlyList<Shot> shots, RunPlan plan, Setup setup, AnalysisSettings settings)
     {
         var shape = new RecordShape { Shots = shots.Count, Samples = plan.Samples, OriginSeconds = plan.Start, TickSeconds = plan.Step, Kind = DetectorKind.Counting };
-        ShotInfo[] infos = [.. shots.Select(s => new ShotInfo(s.Number, (ShotKind)s.Kind, s.Condition, s.ProbeMonitor, s.AblationMonitor, s.Detuning))];
+        ShotInfo[] infos = [.. shots.Select(s => new ShotInfo(s.Number, (ShotKind)s.Kind, s.Condition, s.ProbeMonitor, s.AblationMonitor, s.Detuning) { Point = s.Point })];
         int[] codes = [.. shots.SelectMany(s => s.Counts.Select(c => (int)c))];
         return Reducer.Reduce(shape, infos, [new ShotBlock(0, infos, codes)], setup.Detector, settings.Reduction);
     }

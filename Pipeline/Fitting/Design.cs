@@ -14,6 +14,7 @@ sealed class Design
     {
         Window = window;
         Cells = response.Grid.Cells;
+        IsScan = response.Axis.Points.Count > 0;
         Variables = Cells + window.Causes.Length;
         _columns = new double[Variables][];
         _first = new int[Variables];
@@ -22,7 +23,7 @@ sealed class Design
         // a coupling capacitor makes columns whose sum is nothing
         double[] seen = [.. _columns.Take(Cells).Select(c => c.Sum(Math.Abs))];
         double typical = seen.Order().ElementAt(Cells / 2);
-        double share = response.Axis.Points.Count > 0 ? BlindInScan : BlindShare;
+        double share = IsScan ? BlindInScan : BlindShare;
         Blind = [.. seen.Select(s => s <= share * typical)];
     }
 
@@ -36,6 +37,8 @@ sealed class Design
     public bool[] Blind { get; }
 
     public FitWindow Window { get; }
+    /// <summary>Whether the laser is scanned.</summary>
+    public bool IsScan { get; }
     public int Cells { get; }
     public int Variables { get; }
 

@@ -7,7 +7,8 @@ namespace Pipeline.Fitting;
 /// <remarks>A non-negative spectrum finds molecules in every upward fluctuation of the background and cannot take them back in the downward
 /// ones: far from the beam they widen it (spread 17.7 for a true 16.3 m/s) and fill an empty capture range (lower limits above zero in
 /// five of six runs). Here they cancel. Cells are held by a prior ten times wider than the largest of them, so that cells that cannot be
-/// told apart do not swing; single cells mean nothing, sums over many do.</remarks>
+/// told apart do not swing; single cells mean nothing, sums over many do. In a scan, whose lines are wider than its cells, the smoothing of
+/// the unfolded fit is kept as well: without it numbers were twice as uncertain as the data allow.</remarks>
 sealed class HeldSpectrum
 {
     readonly Design _design;
@@ -16,7 +17,8 @@ sealed class HeldSpectrum
     /// <param name="design">The linear model.</param>
     /// <param name="means">[bins] expected totals, for the weights.</param>
     /// <param name="molecules">[cells] a smooth fit, for the size of the prior.</param>
-    public HeldSpectrum(Design design, double[] means, double[] molecules)
+    /// <param name="smoothing">Strength of the second differences of the fit; used in scans.</param>
+    public HeldSpectrum(Design design, double[] means, double[] molecules, double smoothing)
     {
         _design = design;
         Variance = [.. means.Select((m, i) => design.Window.Variance(i, Math.Max(m, 0.5 * design.Window.Background[i])))];
@@ -26,8 +28,15 @@ sealed class HeldSpectrum
         design.AddNormal(Weights, _factor);
         double hold = 1 / Math.Pow(10 * Math.Max(molecules.Max(), 1e-12), 2);
         for (int c = 0; c < design.Cells; c++) _factor[c * n + c] += design.Blind[c] ? 1e12 * hold : hold;
+        if (design.IsScan) Smooth(smoothing);
         for (int k = design.Cells; k < n; k++) _factor[k * n + k] += 1;
         if (!Cholesky.Factor(_factor, n, n)) throw new InvalidOperationException("the information of a held spectrum is positive definite");
+    }
+
+    void Smooth(double strength)
+    {
+        double[] penalty = Smoothing.Penalty(_design, strength);
+        for (int k = 0; k < penalty.Length; k++) _factor[k] += penalty[k];
     }
 
     /// <summary>[bins].</summary>

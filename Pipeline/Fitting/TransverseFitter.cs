@@ -33,7 +33,7 @@ public static class TransverseFitter
         Quantity spread = Of(x => x[TransverseLine.Spread]);
         // a width that noise can hide is bounded from above: the scatter of replicas that pile up at zero is no error of it
         bool hidden = !(spread.Value > 2 * spread.Total) || best[TransverseLine.Spread] < 1e-3;
-        string most = string.Create(System.Globalization.CultureInfo.InvariantCulture, $"the lines hide it: at most {line.LargestSpread(window, best):G3} m/s with 95 % confidence (profile likelihood)");
+        string most = string.Create(System.Globalization.CultureInfo.InvariantCulture, $"the lines hide it: at most {Largest(setup, signal.Axis.Points, speed, window, best):G3} m/s with 95 % confidence (profile likelihood, the brightness of the probe within its uncertainty)");
         Quantity Wide(Func<double[], double> of) => hidden && spread.NotDeterminedBecause is null ? Quantity.NotDetermined(most) : Of(of);
         return new SpectrumOutcome
         {
@@ -49,6 +49,11 @@ public static class TransverseFitter
             ],
         };
     }
+
+    /// <summary>Power broadening hides the same width: the largest limit over brighter and dimmer light.</summary>
+    static double Largest(Setup setup, IReadOnlyList<double> points, double speed, FitWindow window, double[] best) =>
+        Nuisances.Of(setup).Where(n => n.Name is "saturation" or "scattering rate" or "natural linewidth").SelectMany(n => new[] { n.Shift(setup, 1), n.Shift(setup, -1) }).Append(setup)
+            .Max(s => new TransverseLine(s, points, speed).LargestSpread(window, best));
 
     /// <summary>Name of the quantity that scans of other runs take their zero from.</summary>
     public const string FrequencyZero = "frequency zero";

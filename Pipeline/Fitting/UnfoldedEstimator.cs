@@ -15,6 +15,10 @@ sealed class UnfoldedEstimator : ISpectrumEstimator
 
     const double Undersmoothing = 0.1;
 
+    /// <summary>Weakest strength of a scan: its lines are wider than its cells, and a draw of noise that asks for less smoothing made the mean
+    /// velocity uncertain by hundreds of m/s in one of six made-up scans.</summary>
+    const double WeakestInScan = 0.03;
+
     public string Name => "unfolded";
 
     public FittedSpectrum Fit(FitWindow window, ResponseMatrix response)
@@ -24,15 +28,16 @@ sealed class UnfoldedEstimator : ISpectrumEstimator
         var pilot = new PenalisedFit(design, Smoothing.Penalty(design, unit));
         pilot.StartFlat();
         pilot.Solve();
-        double best = Undersmoothing * Smoothing.ChooseStrength(design, pilot, unit, Ladder);
+        double best = Undersmoothing * Smoothing.ChooseStrength(design, pilot, unit, design.IsScan ? [.. Ladder.Where(l => l >= WeakestInScan)] : Ladder);
         var fit = new PenalisedFit(design, Smoothing.Penalty(design, best * unit));
         fit.Solver.StartFrom(pilot.Solver);
         fit.Solve();
         double effective = Smoothing.EffectiveParameters(design, fit, out double[][] resolution);
-        var held = new HeldSpectrum(design, fit.Means, fit.X[..design.Cells]);
+        var held = new HeldSpectrum(design, fit.Means, fit.X[..design.Cells], best * unit);
         return new UnfoldedSpectrum(response, design, fit, held, best * unit)
         {
             Molecules = fit.X[..design.Cells],
+            SmoothingStrength = best * unit,
             Moments = held.Moments(Net(window), response.Grid),
             Means = fit.Means,
             Deviance = fit.Deviance,
@@ -71,7 +76,7 @@ sealed class UnfoldedSpectrum(ResponseMatrix response, Design design, PenalisedF
         else again.StartFlat();
         again.Solve();
         double[] molecules = again.X[..moved.Cells];
-        var heldAgain = new HeldSpectrum(moved, again.Means, molecules);
+        var heldAgain = new HeldSpectrum(moved, again.Means, molecules, strength);
         return new Refitted(molecules, heldAgain.Moments(UnfoldedEstimator.Net(window), other.Grid));
     }
 }
