@@ -32,8 +32,8 @@ public static class RunAnalysis
             throw new DataFaultException("run", "no kept signal shots", "at least one shot with probe and ablation on",
                 "look at the shots that were cut, and at the labels of the layout");
         IBackgroundModel background = BackgroundModels.Named(settings.Background);
-        return [.. run.Conditions.Select(condition => mode == TransverseFitter.Mode ? TransverseFitter.Fit(run, condition, setup, background, settings.Fit)
-            : SpectrumFitter.Fit(run, condition, setup, background, ResponseModes.Named(mode), settings.Fit))];
+        return ConditionRatios.Add([.. run.Conditions.Select(condition => mode == TransverseFitter.Mode ? TransverseFitter.Fit(run, condition, setup, background, settings.Fit)
+            : SpectrumFitter.Fit(run, condition, setup, background, ResponseModes.Named(mode), settings.Fit))], setup);
     }
 
     /// <summary>Folded predictions, and the verdict on the run.</summary>

@@ -13,6 +13,24 @@ public sealed record InstantEmission : EmissionProfile
     public override double IntegratedCumulativeAt(double time) => Math.Max(0, time - Delay.Value);
 }
 
+/// <summary>A pulse of which only the greatest length is known. It cannot be folded: modes that need the pulse say what it leaves open.</summary>
+public sealed record UnknownEmission : EmissionProfile
+{
+    /// <summary>No pulse decays more slowly than this, s.</summary>
+    public required Measured Longest { get; init => field = Guard.Positive(value); }
+    public override string Name => "unknown";
+    public override double MeanTime => Delay.Value + 0.5 * Longest.Value;
+    public override (double Low, double High) Support => (Delay.Value, Delay.Value + 35 * Longest.Value);
+    public override double CumulativeAt(double time) => throw new InvalidOperationException("an unknown pulse has no shape");
+    public override double IntegratedCumulativeAt(double time) => throw new InvalidOperationException("an unknown pulse has no shape");
+
+    /// <summary>Pulses that it may be: sudden and exponential ones, at once and late.</summary>
+    public IReadOnlyList<EmissionProfile> Candidates => [.. from late in new[] { 0, 0.125, 0.25, 0.5 } from share in new[] { 0, 1.0 / 16, 1.0 / 8, 0.25, 0.5, 1 } where late + share <= 1
+        select share == 0 ? (EmissionProfile)new InstantEmission { Delay = Later(late) } : new ExponentialEmission { Delay = Later(late), Tail = new Measured(share * Longest.Value) }];
+
+    Measured Later(double share) => new(Delay.Value + share * Longest.Value);
+}
+
 /// <summary>Gaussian pulse.</summary>
 public sealed record GaussianEmission : EmissionProfile
 {

@@ -57,13 +57,15 @@ static class ApparatusReader
 
     static EmissionProfile ReadEmission(TomlTable t)
     {
-        string profile = t.Choice("profile", ["instant", "gaussian", "exponential", "exponential-gaussian"]);
+        string profile = t.Choice("profile", ["instant", "gaussian", "exponential", "exponential-gaussian", "unknown"]);
         Measured delay = t.OptionalQuantity("delay", Dimension.Time) ?? default;
         Measured width = profile is "gaussian" or "exponential-gaussian" ? t.Quantity("width", Dimension.Time) : default;
         Measured tail = profile is "exponential" or "exponential-gaussian" ? t.Quantity("tail", Dimension.Time) : default;
+        Measured longest = profile == "unknown" ? t.Quantity("longest", Dimension.Time) : default;
         t.RefuseUnknown();
         return t.Build<EmissionProfile>(() => profile switch
         {
+            "unknown" => new UnknownEmission { Delay = delay, Longest = longest },
             "instant" => new InstantEmission { Delay = delay },
             "gaussian" => new GaussianEmission { Delay = delay, Width = width },
             "exponential" => new ExponentialEmission { Delay = delay, Tail = tail },

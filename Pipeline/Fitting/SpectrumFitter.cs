@@ -23,7 +23,12 @@ public static class SpectrumFitter
         double yieldScatter = replicas.YieldScatter(window);
         int freedom = run.Groups.Where(g => g.Condition == condition && g.Kind == ShotKind.Signal).Sum(g => g.BlockShots.Length - 1);
         FlightMap flight = setup.FlightFor(condition);
-        if (flight is AmbiguousFlight && mode.Scanned != Scanned.Detuning) return Ambiguous(signal, flight, setup, yieldScatter, freedom);
+        if (flight is AmbiguousFlight && mode.Scanned != Scanned.Detuning) return NotDetermined(signal, flight, setup, yieldScatter, freedom, NotUnique);
+        if (setup.Emission is UnknownEmission unknown && mode.Scanned != Scanned.Detuning)
+        {
+            var cells = new VelocityGrid(settings.VelocityFrom, settings.VelocityTo, settings.VelocityStep);
+            return NotDetermined(signal, flight, setup, yieldScatter, freedom, PulseDegeneracy.Describe(window, unknown, pulse => mode.Build(setup with { Emission = pulse }, condition, signal.Axis, cells)));
+        }
         var grid = new VelocityGrid(settings.VelocityFrom, settings.VelocityTo, settings.VelocityStep);
         Func<Setup, ResponseMatrix> build = s => mode.Build(s, condition, signal.Axis, grid);
         var responses = new ShiftedResponses(setup, build);
@@ -35,6 +40,7 @@ public static class SpectrumFitter
             Signal = signal,
             Flight = flight.Name,
             Spectra = [.. outcomes.Select(o => o.ToSpectrum(signal, weak))],
+            Others = OtherQuantities.Of(outcomes[0], setup, weak),
             Below = BelowCaptureFinder.Find(window, responses.Main, setup, settings, yieldScatter, outcomes[0]),
             YieldScatter = yieldScatter,
             YieldFreedom = freedom,
@@ -42,16 +48,14 @@ public static class SpectrumFitter
         };
     }
 
-    static SpectrumOutcome Ambiguous(NetSignal signal, FlightMap flight, Setup setup, double yieldScatter, int freedom)
+    const string NotUnique = "arrival time has no unique speed in this condition; folded predictions can be compared, a Doppler scan would tell";
+
+    static SpectrumOutcome NotDetermined(NetSignal signal, FlightMap flight, Setup setup, double yieldScatter, int freedom, string because) => new()
     {
-        const string Because = "arrival time has no unique speed in this condition; folded predictions can be compared, a Doppler scan would tell";
-        return new SpectrumOutcome
-        {
-            Signal = signal, Flight = flight.Name, Spectra = [], NotDeterminedBecause = Because,
-            Below = new BelowCapture(setup.CaptureSpeed, double.NaN, null, Because), YieldScatter = yieldScatter, YieldFreedom = freedom,
-            Remarks = signal.Remarks,
-        };
-    }
+        Signal = signal, Flight = flight.Name, Spectra = [], NotDeterminedBecause = because,
+        Below = new BelowCapture(setup.CaptureSpeed, double.NaN, null, because), YieldScatter = yieldScatter, YieldFreedom = freedom,
+        Remarks = signal.Remarks,
+    };
 
     static string? Weakness(FitWindow window)
     {

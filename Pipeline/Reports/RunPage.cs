@@ -59,7 +59,7 @@ public static class RunPage
 
     static Markup NumbersTable(ConditionOutcome c) => Html.Of($"""
         <div class="scroll"><table><tr><th>quantity</th><th>measured</th><th>predicted</th></tr>
-        {c.Fit.Others.Select(o => Shown(o)).Select(o => Row(o.Name, o.Quantity, " " + o.Unit, null))}
+        {c.Fit.Others.Select(Shown).Select(o => Row(o.Name, o.Quantity, " " + o.Unit, null))}
         {(c.Fit.Spectra.Count == 0 && c.Fit.Others.Count > 0 ? Markup.None : MainRows(c))}
         </table></div>
         """);

@@ -5,7 +5,7 @@ namespace Pipeline.Response;
 
 /// <summary>Signal against the laser's frequency, all arrival times together: the Doppler shift tells the speed, whenever a molecule left.</summary>
 /// <remarks>Detuning = reading - zero - v cos(theta)/lambda - line offset, theta between laser propagation and velocity. Where flight is not
-/// unique, every molecule is taken to arrive inside the window.</remarks>
+/// unique, or the pulse is unknown, every molecule is taken to arrive inside the window.</remarks>
 public sealed class DopplerResponse : IResponseMode
 {
     public string Name => "doppler";
@@ -38,7 +38,7 @@ static class ScanColumns
         if (setup.Detector.CouplingTime.Value > 0)
             throw new DataFaultException("[detector] coupling_time", "a coupled detector in a scan", "direct coupling", "take scans with a directly coupled detector, or measure arrival times");
         var yield = new ScanYield(setup, axis.Points, grid.Edge(grid.Cells));
-        ArrivalCells? arrival = flight is AmbiguousFlight ? null : new ArrivalCells(setup, flight, axis, alike: true);
+        ArrivalCells? arrival = flight is AmbiguousFlight || setup.Emission is UnknownEmission ? null : new ArrivalCells(setup, flight, axis, alike: true);
         var columns = new double[grid.Cells][];
         for (int c = 0; c < grid.Cells; c++)
         {
