@@ -34,7 +34,7 @@ public class NightTests
     static void AssertTruth(string results)
     {
         JsonElement truth = JsonDocument.Parse(File.ReadAllBytes(Path.Combine(Repository.Root, "sample-data", "2026-11-23", "truth.json"))).RootElement.GetProperty("runs");
-        foreach (string run in (string[])["0912-free", "0957-free-wide", "1043-slowed", "1125-slowed", "1402-slowed", "1515-weak"])
+        foreach (string run in (string[])["0912-free", "0957-free-wide", "1043-slowed", "1125-slowed", "1402-slowed", "1515-weak", "1545-doppler"])
         {
             JsonElement conditions = Result(results, run).GetProperty("conditions");
             JsonElement expected = truth.EnumerateObject().Single(p => Path.GetFileNameWithoutExtension(p.Name) == run).Value;
@@ -47,6 +47,25 @@ public class NightTests
                     Assert.True(Math.Abs(value - should) < 3 * error, $"{run} {condition.Name} {quantity}: {value} ± {error}, made with {should}");
                 }
         }
+    }
+
+    /// <summary>A scan takes the zero of its axis from the scan across the beam, and says so; without one it is not analysed.</summary>
+    [Fact]
+    public async Task Night_DopplerScan_TakesItsZeroFromTheScanAcrossTheBeam()
+    {
+        using var demo = new DemoDay("1530-across", "1545-doppler");
+        await Run("night", demo.Day, "--results", demo.Results);
+        string results = Path.Combine(demo.Results, "2026-11-23");
+        JsonElement zero = Result(results, "1530-across").GetProperty("conditions").GetProperty("off").GetProperty("others").GetProperty("frequency zero");
+        // the invented day reads 4 MHz on the line
+        double error = double.Hypot(zero.GetProperty("statistical").GetDouble(), zero.GetProperty("systematic").GetDouble());
+        Assert.InRange(zero.GetProperty("value").GetDouble(), 4e6 - 3 * error, 4e6 + 3 * error);
+        Assert.Equal(["1545-doppler.h5", "1530-across.h5"], Result(results, "1545-doppler").GetProperty("provenance").GetProperty("inputs").EnumerateArray().Select(i => i.GetProperty("file").GetString()));
+        File.Delete(Path.Combine(demo.Day, "1530-across.h5"));
+        (int code, string said) = await Run("night", demo.Day, "--results", demo.Results);
+        Assert.Equal(CommandLine.SomeFailed, code);
+        Assert.Contains("no scan across the beam \"*-across\"", said, StringComparison.Ordinal);
+        Assert.False(File.Exists(Path.Combine(results, "1545-doppler", "result.json")));
     }
 
     [Fact]

@@ -44,8 +44,7 @@ public static class RunAnalysis
         var answers = new List<Answer>();
         foreach (SpectrumOutcome fit in fits)
         {
-            // a scan would need every molecule folded at every point: not built yet, and said so in the remarks of the run
-            if (fit.Signal.Axis.Points.Count > 0 || !predictions.TryGetValue(fit.Signal.Condition, out ConditionPrediction? prediction))
+            if (!predictions.TryGetValue(fit.Signal.Condition, out ConditionPrediction? prediction))
             {
                 conditions.Add(new ConditionOutcome(fit, null, false));
                 continue;
@@ -54,7 +53,7 @@ public static class RunAnalysis
             conditions.Add(new ConditionOutcome(fit, both.Folded, prediction.RelativeOnly));
             answers.AddRange(Questions.All.Where(q => !(q.NeedsAbsolute && prediction.RelativeOnly)).Select(q => q.Ask(both)));
         }
-        return (conditions, Judge.Decide(answers, settings.Comparison.Level, "no prediction belongs to this run"));
+        return (conditions, Judge.Decide(answers, settings.Comparison.Level, fits.Any(f => f.Signal.Axis.Points.Count > 0) ? "predictions are not folded into laser scans" : "no prediction belongs to this run"));
     }
 
     static Func<Setup, double, FoldedPrediction> Folding(ConditionPrediction prediction, SpectrumOutcome fit, AnalysisSettings settings)

@@ -15,6 +15,7 @@ sealed class Design
         Window = window;
         Cells = response.Grid.Cells;
         IsScan = response.Axis.Points.Count > 0;
+        IsBroad = IsScan && response.Axis.TimeBins == 1;
         Variables = Cells + window.Causes.Length;
         _columns = new double[Variables][];
         _first = new int[Variables];
@@ -39,6 +40,8 @@ sealed class Design
     public FitWindow Window { get; }
     /// <summary>Whether the laser is scanned.</summary>
     public bool IsScan { get; }
+    /// <summary>Whether the laser's frequency alone tells velocities apart: with lines that are wider than cells.</summary>
+    public bool IsBroad { get; }
     public int Cells { get; }
     public int Variables { get; }
 

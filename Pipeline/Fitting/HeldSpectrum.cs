@@ -7,7 +7,7 @@ namespace Pipeline.Fitting;
 /// <remarks>A non-negative spectrum finds molecules in every upward fluctuation of the background and cannot take them back in the downward
 /// ones: far from the beam they widen it (spread 17.7 for a true 16.3 m/s) and fill an empty capture range (lower limits above zero in
 /// five of six runs). Here they cancel. Cells are held by a prior ten times wider than the largest of them, so that cells that cannot be
-/// told apart do not swing; single cells mean nothing, sums over many do. In a scan, whose lines are wider than its cells, the smoothing of
+/// told apart do not swing; single cells mean nothing, sums over many do. In a scan without arrival times, whose lines are wider than its cells, the smoothing of
 /// the unfolded fit is kept as well: without it numbers were twice as uncertain as the data allow.</remarks>
 sealed class HeldSpectrum
 {
@@ -28,7 +28,7 @@ sealed class HeldSpectrum
         design.AddNormal(Weights, _factor);
         double hold = 1 / Math.Pow(10 * Math.Max(molecules.Max(), 1e-12), 2);
         for (int c = 0; c < design.Cells; c++) _factor[c * n + c] += design.Blind[c] ? 1e12 * hold : hold;
-        if (design.IsScan) Smooth(smoothing);
+        if (design.IsBroad) Smooth(smoothing);
         for (int k = design.Cells; k < n; k++) _factor[k * n + k] += 1;
         if (!Cholesky.Factor(_factor, n, n)) throw new InvalidOperationException("the information of a held spectrum is positive definite");
     }

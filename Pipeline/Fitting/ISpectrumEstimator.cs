@@ -18,8 +18,6 @@ abstract class FittedSpectrum
     public required double[] Molecules { get; init; }
     /// <summary>Number, mean and spread as this estimator quotes them.</summary>
     public required SpectrumMoments Moments { get; init; }
-    /// <summary>Strength of the smoothing; 0 where there is none.</summary>
-    public double SmoothingStrength { get; init; }
     /// <summary>[window bins] expected totals with background and fitted causes.</summary>
     public required double[] Means { get; init; }
     public required double Deviance { get; init; }

@@ -17,7 +17,8 @@ sealed record LinearEstimate(double Value, double Counts, double Background, dou
     public static LinearEstimate Of(FitWindow window, ResponseMatrix response, FittedSpectrum fit, double[] direction)
     {
         var design = new Design(window, response);
-        var held = new HeldSpectrum(design, fit.Means, fit.Molecules, fit.SmoothingStrength);
+        // smoothing would carry molecules across the edge of a narrow range
+        var held = new HeldSpectrum(design, fit.Means, fit.Molecules, 0);
         double[] bins = [.. design.Apply(held.Solve(direction)).Zip(held.Weights, (a, w) => a * w)];
         double Sum(double[] values) => bins.Zip(values, (w, x) => w * x).Sum();
         double counting = bins.Zip(held.Variance, (w, v) => w * w * v).Sum();

@@ -28,7 +28,7 @@ sealed class UnfoldedEstimator : ISpectrumEstimator
         var pilot = new PenalisedFit(design, Smoothing.Penalty(design, unit));
         pilot.StartFlat();
         pilot.Solve();
-        double best = Undersmoothing * Smoothing.ChooseStrength(design, pilot, unit, design.IsScan ? [.. Ladder.Where(l => l >= WeakestInScan)] : Ladder);
+        double best = Undersmoothing * Smoothing.ChooseStrength(design, pilot, unit, design.IsBroad ? [.. Ladder.Where(l => l >= WeakestInScan)] : Ladder);
         var fit = new PenalisedFit(design, Smoothing.Penalty(design, best * unit));
         fit.Solver.StartFrom(pilot.Solver);
         fit.Solve();
@@ -37,7 +37,6 @@ sealed class UnfoldedEstimator : ISpectrumEstimator
         return new UnfoldedSpectrum(response, design, fit, held, best * unit)
         {
             Molecules = fit.X[..design.Cells],
-            SmoothingStrength = best * unit,
             Moments = held.Moments(Net(window), response.Grid),
             Means = fit.Means,
             Deviance = fit.Deviance,
