@@ -59,8 +59,8 @@ public static class RunPage
 
     static Markup NumbersTable(ConditionOutcome c) => Html.Of($"""
         <div class="scroll"><table><tr><th>quantity</th><th>measured</th><th>predicted</th></tr>
-        {c.Fit.Others.Select(Shown).Select(o => Row(o.Name, o.Quantity, " " + o.Unit, null))}
         {(c.Fit.Spectra.Count == 0 && c.Fit.Others.Count > 0 ? Markup.None : MainRows(c))}
+        {c.Fit.Others.Select(Shown).Select(o => Row(o.Name, o.Quantity, " " + o.Unit, null))}
         </table></div>
         """);
 
@@ -75,7 +75,7 @@ public static class RunPage
     static NamedQuantity Shown(NamedQuantity q) => q.Unit switch
     {
         "Hz" => q with { Unit = "MHz", Quantity = q.Quantity.Times(1e-6) },
-        "K" => q with { Unit = "mK", Quantity = q.Quantity.Times(1e3) },
+        "K" when !(q.Quantity.Value >= 1) => q with { Unit = "mK", Quantity = q.Quantity.Times(1e3) },
         "rad" => q with { Unit = "mrad", Quantity = q.Quantity.Times(1e3) },
         _ => q,
     };
