@@ -77,11 +77,7 @@ public sealed class HardInputTests : IDisposable
     public void Open_UnreadableCsv_IsRefused(string name)
     {
         string path = Csv("time (us),shot_0,shot_1\n0,1,0\n10,2,0\n");
-        if (!OperatingSystem.IsWindows())
-        {
-            File.SetUnixFileMode(_folder, UnixFileMode.UserRead | UnixFileMode.UserWrite | UnixFileMode.UserExecute | UnixFileMode.GroupRead | UnixFileMode.GroupExecute | UnixFileMode.OtherRead | UnixFileMode.OtherExecute);
-            foreach (string file in Directory.GetFiles(_folder)) File.SetUnixFileMode(file, UnixFileMode.UserRead | UnixFileMode.GroupRead | UnixFileMode.OtherRead);
-        }
+        LetOthersIn();
         Forbid(Path.Combine(_folder, name));
         Unprivileged.Run(() =>
         {
@@ -89,6 +85,22 @@ public sealed class HardInputTests : IDisposable
             Assert.Contains("cannot be opened", fault.Found, StringComparison.Ordinal);
             Assert.Equal(name, fault.Where);
             Assert.Contains("permission", fault.Remedy, StringComparison.Ordinal);
+        });
+    }
+
+    /// <summary>A day's folder, and a folder of traces, without permission.</summary>
+    [SkippableFact]
+    public void Open_FolderWithoutPermission_IsRefused()
+    {
+        string closed = Path.Combine(_folder, "closed");
+        Directory.CreateDirectory(closed);
+        Pipeline.Configuration.LabConfiguration lab = Pipeline.Configuration.ConfigurationReader.Read(Path.Combine(Repository.Root, "config"));
+        LetOthersIn();
+        Forbid(closed);
+        Unprivileged.Run(() =>
+        {
+            foreach (Action act in (Action[])[() => Pipeline.Night.DayFolder.Open(closed, lab), () => FileSketches.Of(closed)])
+                Assert.Contains("a folder that cannot be read", Bounded(act).Found, StringComparison.Ordinal);
         });
     }
 
@@ -164,6 +176,13 @@ public sealed class HardInputTests : IDisposable
         Assert.NotEmpty(fault.Remedy);
         Assert.True(fault.Found.Length < 500, $"{fault.Found.Length} characters");
         return fault;
+    }
+
+    void LetOthersIn()
+    {
+        if (OperatingSystem.IsWindows()) return;
+        File.SetUnixFileMode(_folder, UnixFileMode.UserRead | UnixFileMode.UserWrite | UnixFileMode.UserExecute | UnixFileMode.GroupRead | UnixFileMode.GroupExecute | UnixFileMode.OtherRead | UnixFileMode.OtherExecute);
+        foreach (string file in Directory.GetFiles(_folder)) File.SetUnixFileMode(file, UnixFileMode.UserRead | UnixFileMode.GroupRead | UnixFileMode.OtherRead);
     }
 
     static void Forbid(string path)

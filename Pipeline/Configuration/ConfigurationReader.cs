@@ -58,7 +58,7 @@ public static class ConfigurationReader
         string below = Path.Combine(folder, "layouts");
         var broken = new List<string>();
         if (!Directory.Exists(below)) return (shots, molecules, broken);
-        foreach (string path in Directory.GetFiles(below, "*.toml").Order(StringComparer.Ordinal))
+        foreach (string path in FolderList.Of(below, "*.toml"))
         {
             string relative = $"layouts/{Path.GetFileName(path)}", name = Path.GetFileNameWithoutExtension(path);
             files.Add(relative);
@@ -73,7 +73,7 @@ public static class ConfigurationReader
     static Apparatus.Species SpeciesOf(string folder, TomlTable root, string name, SortedSet<string> files)
     {
         string relative = $"species/{name}.toml", below = Path.Combine(folder, "species");
-        string[] known = Directory.Exists(below) ? [.. Directory.GetFiles(below, "*.toml").Select(p => Path.GetFileNameWithoutExtension(p)!)] : [];
+        string[] known = Directory.Exists(below) ? [.. FolderList.Of(below, "*.toml").Select(p => Path.GetFileNameWithoutExtension(p)!)] : [];
         if (!known.Contains(name, StringComparer.Ordinal))
             throw root.Refuse("species", $"\"{name}\"", "a file of that name in species/", known.Length > 0 ? NearestName.Remedy(name, known) : "write one");
         files.Add(relative);

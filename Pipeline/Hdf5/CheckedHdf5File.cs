@@ -28,8 +28,6 @@ sealed class CheckedHdf5File : IHdf5File
         if (_native.IsValueCreated) _native.Value.Dispose();
     }
 
-    public bool HasDataset(string path) => Links ? _native.Value.HasDataset(path) : _managed.HasDataset(path);
-
     public DatasetShape Shape(string path) => Either(path, (f, at) => f.Shape(at));
 
     public IReadOnlyList<Hdf5Node> Describe(int most) => Links ? _native.Value.Describe(most) : _managed.Describe(most);
@@ -54,7 +52,7 @@ sealed class CheckedHdf5File : IHdf5File
         Misreads ? _native.Value.ReadNumberAttributes(path, attribute) : Either(path, (f, at) => f.ReadNumberAttributes(at, attribute));
 
     public string[] ReadTextAttributes(string path, string attribute) =>
-        Misreads && !(Hard(path) is { } hard && _managed.IsVariableText(hard, attribute, ofAttribute: true))
+        Misreads && !(Hard(path) is { } hard && _managed.IsVariableTextAttribute(hard, attribute))
             ? _native.Value.ReadTextAttributes(path, attribute) : Either(path, (f, at) => f.ReadTextAttributes(at, attribute));
 
     bool Links => _managed.Hazards.HasFlag(Hazards.Links);

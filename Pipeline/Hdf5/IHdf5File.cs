@@ -36,9 +36,6 @@ public interface IHdf5File : IDisposable
     /// <summary>Name of the library that reads, for the provenance.</summary>
     string Reader { get; }
 
-    /// <summary>Whether a dataset stands at this path.</summary>
-    bool HasDataset(string path);
-
     /// <exception cref="DataFaultException">No such dataset, or one that cannot be read safely.</exception>
     DatasetShape Shape(string path);
 

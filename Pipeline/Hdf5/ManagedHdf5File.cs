@@ -44,11 +44,10 @@ sealed class ManagedHdf5File : IHdf5File
         return type?.Class == H5DataTypeClass.VariableLength;
     });
 
-    public bool IsVariableText(string path, string attribute, bool ofAttribute) => ofAttribute && Guarded(path, () => Attribute(path, attribute).Type.Class == H5DataTypeClass.VariableLength);
+    /// <summary>The same of an attribute.</summary>
+    public bool IsVariableTextAttribute(string path, string attribute) => Guarded(path, () => Attribute(path, attribute).Type.Class == H5DataTypeClass.VariableLength);
 
     public void Dispose() => _file.Dispose();
-
-    public bool HasDataset(string path) => Find(path) is not null;
 
     public DatasetShape Shape(string path)
     {

@@ -35,7 +35,7 @@ public sealed class DayFolder
     public static DayFolder Open(string path, LabConfiguration lab)
     {
         if (!Directory.Exists(path)) throw new DataFaultException(path, "no such folder", "a day's folder with shot files", "check the name");
-        string[] files = [.. Directory.GetFileSystemEntries(path).Select(f => System.IO.Path.GetFileName(f)).Where(f => f[0] != '.').Order(StringComparer.Ordinal)];
+        string[] files = [.. FolderList.Of(path).Select(f => System.IO.Path.GetFileName(f)).Where(f => f[0] != '.').Order(StringComparer.Ordinal)];
         var predictions = lab.Predictions.Select(p => p.File).ToHashSet(StringComparer.Ordinal);
         RunFile[] runs = [.. files.Where(f => !predictions.Contains(f)).SelectMany(f => RunsOf(path, f, lab)).OrderBy(r => r.Name, StringComparer.Ordinal)];
         foreach (var same in runs.GroupBy(r => r.Name, StringComparer.Ordinal).Where(g => g.Count() > 1))

@@ -67,7 +67,7 @@ public sealed class FollowWork(LabConfiguration lab, string path, string results
     static Stamp StampOf(RunFile run)
     {
         var files = new List<FileInfo>();
-        if (Directory.Exists(run.Path)) files.AddRange(new DirectoryInfo(run.Path).GetFiles());
+        if (Directory.Exists(run.Path)) files.AddRange(FolderList.Of(run.Path).Select(f => new FileInfo(f)));
         else files.Add(new FileInfo(run.Path));
         if (run.ShotTablePath is { } table) files.Add(new FileInfo(table));
         FileInfo[] there = [.. files.Where(f => f.Exists)];

@@ -12,12 +12,11 @@ public sealed class DetectionYield
     const int SpreadNodes = 24;
     static readonly GaussLegendreRule Across = new(-1, 1, 32);
     readonly Setup _setup;
-    readonly (double Shift, double Weight)[] _spread;
 
     public DetectionYield(Setup setup)
     {
         _setup = setup;
-        _spread = DetuningSpread(setup.Probe.DetuningSpread.Value);
+        Spread = DetuningSpread(setup.Probe.DetuningSpread.Value);
     }
 
     /// <summary>Mean counts for each molecule of this speed.</summary>
@@ -31,7 +30,7 @@ public sealed class DetectionYield
         foreach (SpectralLine line in _setup.Species.Lines)
         {
             total += line.Weight;
-            foreach ((double shift, double weight) in _spread)
+            foreach ((double shift, double weight) in Spread)
                 sum += line.Weight * weight * Photons(Exposure(speed, shift - line.OffsetHz));
         }
         return sum / total;
@@ -42,7 +41,7 @@ public sealed class DetectionYield
         _setup.Species.PhotonLimit is { } limit ? Exposure(speed, -_setup.Species.Lines[0].OffsetHz) / limit.Value : 0;
 
     /// <summary>Nodes and weights of what spreads the detuning, Hz.</summary>
-    public (double Shift, double Weight)[] Spread => _spread;
+    public (double Shift, double Weight)[] Spread { get; }
 
     double Photons(double x) => Photons(x, _setup.Species.PhotonLimit?.Value);
 

@@ -32,12 +32,6 @@ sealed unsafe class NativeHdf5File : IHdf5File
         }
     }
 
-    public bool HasDataset(string path) => Guarded(path, () =>
-    {
-        using NativeId? found = _links.Open(path);
-        return found is not null;
-    });
-
     public DatasetShape Shape(string path) => Guarded(path, () =>
     {
         NativeId dataset = Dataset(path);

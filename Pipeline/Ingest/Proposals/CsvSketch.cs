@@ -12,7 +12,7 @@ static class CsvSketch
     {
         CsvHead head = CsvHead.Of(path);
         string run = Path.GetFileNameWithoutExtension(path), folder = Path.GetDirectoryName(path) ?? "";
-        string? table = Directory.GetFiles(folder.Length == 0 ? "." : folder, run + "*.csv").Select(f => Path.GetFileName(f)!).FirstOrDefault(f => f != Path.GetFileName(path) && f.Contains("shot", StringComparison.OrdinalIgnoreCase));
+        string? table = FolderList.Of(folder.Length == 0 ? "." : folder, run + "*.csv").Select(f => Path.GetFileName(f)!).FirstOrDefault(f => f != Path.GetFileName(path) && f.Contains("shot", StringComparison.OrdinalIgnoreCase));
         // counts are whole: only the table of shots shows how decimals are written
         if (table is not null) head = head with { DecimalComma = head.DecimalComma || CsvHead.Of(Path.Combine(folder, table)).DecimalComma };
         return new FileSketch(head.Tree, table is null ? null : Wide(head, folder, run, table) ?? Long(head, path, folder, run, table));
@@ -21,7 +21,7 @@ static class CsvSketch
     /// <summary>A folder with a table of shots and one trace a shot.</summary>
     public static FileSketch OfFolder(string path)
     {
-        string[] files = [.. Directory.GetFiles(path, "*.csv").Order(StringComparer.Ordinal)];
+        string[] files = FolderList.Of(path, "*.csv");
         string? table = files.FirstOrDefault(f => Path.GetFileName(f).Contains("shots", StringComparison.OrdinalIgnoreCase));
         string? trace = files.FirstOrDefault(f => f != table);
         string[] tree = [string.Create(CultureInfo.InvariantCulture, $"{Path.GetFileName(Path.TrimEndingDirectorySeparator(path))}: {files.Length} CSV files")];

@@ -15,7 +15,16 @@ public static class FileSketches
     static bool BeginsAsHdf5(string path)
     {
         Span<byte> first = stackalloc byte[4];
-        using FileStream file = File.OpenRead(path);
+        using FileStream file = Opened(path);
         return file.ReadAtLeast(first, 4, throwOnEndOfStream: false) == 4 && first is [0x89, (byte)'H', (byte)'D', (byte)'F'];
+    }
+
+    static FileStream Opened(string path)
+    {
+        try { return File.OpenRead(path); }
+        catch (Exception e) when (e is IOException or UnauthorizedAccessException)
+        {
+            throw new DataFaultException(Path.GetFileName(path), $"a file that cannot be opened ({e.Message})", "a readable file", "check name and permission");
+        }
     }
 }
