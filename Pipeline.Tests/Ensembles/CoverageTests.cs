@@ -13,7 +13,7 @@ namespace Pipeline.Tests.Ensembles;
 /// ARRIVALS_ENSEMBLE=400 runs the full one.</summary>
 public class CoverageTests(ITestOutputHelper output)
 {
-    static readonly int Runs = int.TryParse(Environment.GetEnvironmentVariable("ARRIVALS_ENSEMBLE"), out int n) ? n : 24;
+    static readonly int Runs = MadeShots.Runs;
 
     [Fact]
     public void Fit_FreeFlightEnsemble_PullsAreNormalAndCaptureIntervalsCover()
@@ -33,7 +33,7 @@ public class CoverageTests(ITestOutputHelper output)
         int below = 0;
         for (int k = 0; k < Runs; k++)
         {
-            SpectrumOutcome found = RunAnalysis.Fit(Reduce(Simulate.Run(scene, beam, plan, 1000 + k), plan, lab.Setup, settings), "arrival", lab.Setup, settings).Single();
+            SpectrumOutcome found = RunAnalysis.Fit(MadeShots.Reduce(Simulate.Run(scene, beam, plan, 1000 + k), plan, lab.Setup, settings), "arrival", lab.Setup, settings).Single();
             pulls.Number[k] = (found.Number.Value - truth.Molecules) / found.Number.Statistical;
             pulls.Mean[k] = (found.Mean.Value - truth.MeanSpeed) / found.Mean.Statistical;
             pulls.Spread[k] = (found.Spread.Value - truth.Spread) / found.Spread.Statistical;
@@ -72,7 +72,7 @@ public class CoverageTests(ITestOutputHelper output)
         var (number, mean, errors) = (new double[runs], new double[runs], new double[runs]);
         for (int k = 0; k < runs; k++)
         {
-            SpectrumOutcome found = RunAnalysis.Fit(Reduce(Simulate.Run(scene, Day.Usual, plan, 3000 + k), plan, setup, settings), mode, setup, settings).Single();
+            SpectrumOutcome found = RunAnalysis.Fit(MadeShots.Reduce(Simulate.Run(scene, Day.Usual, plan, 3000 + k), plan, setup, settings), mode, setup, settings).Single();
             number[k] = (found.Number.Value - truth.Molecules) / found.Number.Statistical;
             mean[k] = (found.Mean.Value - truth.MeanSpeed) / found.Mean.Statistical;
             errors[k] = found.Mean.Statistical;
@@ -89,13 +89,5 @@ public class CoverageTests(ITestOutputHelper output)
         output.WriteLine($"{name}: mean pull {mean:F2}, width {width:F2}, {pulls.Count(p => Math.Abs(p) < 1)} of {pulls.Length} within one");
         Assert.InRange(mean, -4 / Math.Sqrt(pulls.Length), 4 / Math.Sqrt(pulls.Length));
         Assert.InRange(width, 1 - 4 / Math.Sqrt(2.0 * pulls.Length), 1 + 4 / Math.Sqrt(2.0 * pulls.Length));
-    }
-
-    static BinnedRun Reduce(IReadOnlyList<Shot> shots, RunPlan plan, Setup setup, AnalysisSettings settings)
-    {
-        var shape = new RecordShape { Shots = shots.Count, Samples = plan.Samples, OriginSeconds = plan.Start, TickSeconds = plan.Step, Kind = DetectorKind.Counting };
-        ShotInfo[] infos = [.. shots.Select(s => new ShotInfo(s.Number, (ShotKind)s.Kind, s.Condition, s.ProbeMonitor, s.AblationMonitor, s.Detuning) { Point = s.Point })];
-        int[] codes = [.. shots.SelectMany(s => s.Counts.Select(c => (int)c))];
-        return Reducer.Reduce(shape, infos, [new ShotBlock(0, infos, codes)], setup.Detector, settings.Reduction);
     }
 }

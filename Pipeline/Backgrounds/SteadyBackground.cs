@@ -21,11 +21,11 @@ sealed class SteadyBackground : IBackgroundModel
         if (run.DetectorKind != DetectorKind.Counting)
             throw new DataFaultException("background = \"steady\"", "an analog detector", "a counting detector", "use background = \"templates\"");
         SteadyData data = SteadyData.Of(run, condition, detector);
-        PoissonFit one = BestOf(data, SteadyModel.StartsWithOne(data));
+        PoissonFit one = BestOf(data, SteadyModel.StartsWithOne(data), exponentials: 1);
         PoissonFit best = one;
         if (data.Flash is not null)
         {
-            PoissonFit two = BestOf(data, SteadyModel.StartsWithTwo(one.Parameters));
+            PoissonFit two = BestOf(data, SteadyModel.StartsWithTwo(one.Parameters), exponentials: 2);
             if (one.Deviance - two.Deviance > SecondMustBring) best = two;
         }
         if (!best.Converged || best.Covariance is null)
@@ -39,9 +39,9 @@ sealed class SteadyBackground : IBackgroundModel
         public NetSignal Under(ShotGroup signal) => Assemble(data.WithSignal(ShotMeans.Of(run, signal, detector), detector), fit);
     }
 
-    static PoissonFit BestOf(SteadyData data, IEnumerable<double[]> starts)
+    static PoissonFit BestOf(SteadyData data, IEnumerable<double[]> starts, int exponentials)
     {
-        (double[] low, double[] high) = SteadyModel.Bounds(data);
+        (double[] low, double[] high) = SteadyModel.Bounds(data, exponentials);
         return starts.Select(s => PoissonFit.Find(SteadyModel.Means(data), data.Counts, s, low, high))
             .Aggregate((a, b) => b.Deviance < a.Deviance ? b : a);
     }

@@ -12,11 +12,17 @@ static class SteadyModel
 
     public static readonly string[] Names = ["dark rate", "scatter rate", "flash counts", "flash time", "second flash counts", "second flash time"];
 
-    public static (double[] Low, double[] High) Bounds(SteadyData data)
+    /// <summary>Share of the narrowest bin below which a decay cannot be told from an instant.</summary>
+    const double ShortestDecay = 0.2;
+
+    /// <param name="data">The run.</param>
+    /// <param name="exponentials">1 or 2.</param>
+    public static (double[] Low, double[] High) Bounds(SteadyData data, int exponentials)
     {
         bool flash = data.Flash is not null;
-        return ([0, 0, 0, Math.Log(1e-6), 0, Math.Log(3)],
-            [data.SeparatesDark ? 1e12 : 0, 1e12, flash ? 1e9 : 0, Math.Log(0.1), flash ? 1e9 : 0, Math.Log(300)]);
+        double shortest = Math.Min(1e-3, Math.Max(1e-6, ShortestDecay * Enumerable.Range(0, data.Axis.TimeBins).Min(data.Axis.WidthSeconds)));
+        return ([0, 0, 0, Math.Log(shortest), 0, Math.Log(3)],
+            [data.SeparatesDark ? 1e12 : 0, 1e12, flash ? 1e9 : 0, Math.Log(0.1), flash && exponentials == 2 ? 1e9 : 0, Math.Log(300)]);
     }
 
     public static IEnumerable<double[]> StartsWithOne(SteadyData data)

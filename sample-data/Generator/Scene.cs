@@ -52,4 +52,11 @@ public sealed record Scene
 /// <param name="Emitted">Molecules a shot at mean yield.</param>
 /// <param name="Drift">u, m/s.</param>
 /// <param name="Width">alpha, m/s.</param>
-public sealed record Beam(double Emitted, double Drift, double Width);
+public sealed record Beam(double Emitted, double Drift, double Width)
+{
+    /// <summary>A second beam that leaves in the same pulse; null: none.</summary>
+    public Beam? Slower { get; init; }
+
+    /// <summary>This beam, then the second one.</summary>
+    public IEnumerable<Beam> Parts => Slower is { } slower ? [this, .. slower.Parts] : [this];
+}

@@ -90,9 +90,9 @@ public static class Simulate
 
     static void Molecules(Scene scene, Beam beam, Draw draw, bool on, double yield, double detuning, double power, List<double> times)
     {
-        int emitted = draw.Poisson(beam.Emitted * yield);
-        for (int m = 0; m < emitted; m++)
-            if (Flight.ToProbe(scene, Flight.Emit(scene, beam, draw), on) is { } at) Fluorescence.Detect(scene, at, detuning, power, draw, times);
+        foreach (Beam part in beam.Parts)
+            for (int m = draw.Poisson(part.Emitted * yield); m > 0; m--)
+                if (Flight.ToProbe(scene, Flight.Emit(scene, part, draw), on) is { } at) Fluorescence.Detect(scene, at, detuning, power, draw, times);
     }
 
     static void Steady(Draw draw, double mean, double start, double span, List<double> times)

@@ -11,13 +11,17 @@ public sealed record Truth(double Molecules, double MeanSpeed, double Spread, do
     {
         var draw = new Draw(seed);
         (double n, double sum, double squares, double below) = (0, 0, 0, 0);
-        for (int k = 0; k < sample; k++)
+        foreach (Beam part in beam.Parts)
         {
-            if (Flight.ToProbe(scene, Flight.Emit(scene, beam, draw), on) is not { } at) continue;
-            (n, sum, squares) = (n + 1, sum + at.Speed, squares + at.Speed * at.Speed);
-            if (at.Speed < capture) below++;
+            double each = part.Emitted / sample;
+            for (int k = 0; k < sample; k++)
+            {
+                if (Flight.ToProbe(scene, Flight.Emit(scene, part, draw), on) is not { } at) continue;
+                (n, sum, squares) = (n + each, sum + each * at.Speed, squares + each * at.Speed * at.Speed);
+                if (at.Speed < capture) below += each;
+            }
         }
-        double mean = sum / n, factor = beam.Emitted / sample;
-        return new Truth(n * factor, mean, Math.Sqrt(squares / n - mean * mean), below * factor);
+        double mean = sum / n;
+        return new Truth(n, mean, Math.Sqrt(squares / n - mean * mean), below);
     }
 }

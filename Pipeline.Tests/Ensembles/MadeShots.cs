@@ -1,0 +1,21 @@
+using Pipeline.Analysis;
+using Pipeline.Apparatus;
+using Pipeline.Reduction;
+using SampleDay;
+
+namespace Pipeline.Tests.Ensembles;
+
+/// <summary>Shots made molecule by molecule, as a reduced run.</summary>
+static class MadeShots
+{
+    /// <summary>Runs of an ensemble; ARRIVALS_ENSEMBLE=400 makes the full one.</summary>
+    public static int Runs { get; } = int.TryParse(Environment.GetEnvironmentVariable("ARRIVALS_ENSEMBLE"), out int n) ? n : 24;
+
+    public static BinnedRun Reduce(IReadOnlyList<Shot> shots, RunPlan plan, Setup setup, AnalysisSettings settings)
+    {
+        var shape = new RecordShape { Shots = shots.Count, Samples = plan.Samples, OriginSeconds = plan.Start, TickSeconds = plan.Step, Kind = DetectorKind.Counting };
+        ShotInfo[] infos = [.. shots.Select(s => new ShotInfo(s.Number, (ShotKind)s.Kind, s.Condition, s.ProbeMonitor, s.AblationMonitor, s.Detuning) { Point = s.Point })];
+        int[] codes = [.. shots.SelectMany(s => s.Counts.Select(c => (int)c))];
+        return Reducer.Reduce(shape, infos, [new ShotBlock(0, infos, codes)], setup.Detector, settings.Reduction);
+    }
+}
