@@ -51,7 +51,7 @@ static class Lines
     static string Text(Quantity q, string unit) => q.NotDeterminedBecause is { } because ? $"not determined: {because}" : Numbers.WithErrors(q) + unit;
 
     static string Below(BelowCapture b) => b.NotDeterminedBecause is { } because ? $"not determined: {because}"
-        : Format($"{Numbers.Digits(b.Value)}, {100 * b.Interval!.Value.Confidence:G3} % interval {Numbers.Digits(b.Interval.Value.Low)} to {Numbers.Digits(b.Interval.Value.High)} molecules a shot");
+        : Format($"{Numbers.Digits(b.Value)}, {100 * b.Interval!.Value.Confidence:G3} % interval {Numbers.Digits(b.Interval.Value.Low)} to {Numbers.Digits(b.Interval.Value.High)} molecules a shot{(b.Strict is { } s ? $"; over all spectra that the signal allows {Numbers.Digits(s.Low)} to {Numbers.Digits(s.High)}" : "")}");
 
     static string BelowShort(BelowCapture b) => b.Interval is { } i ? $"{Numbers.Digits(i.Low)} to {Numbers.Digits(i.High)}" : "not determined";
 

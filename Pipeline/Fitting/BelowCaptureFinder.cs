@@ -13,7 +13,8 @@ static class BelowCaptureFinder
         FitWindow window, ResponseMatrix response, Setup setup, FitSettings settings, double yieldScatter, EstimatorRun quoted)
     {
         double[] share = response.Grid.ShareBelow(setup.CaptureSpeed);
-        bool[] blind = new Design(window, response).Blind;
+        var design = new Design(window, response);
+        bool[] blind = design.Blind;
         double[] seen = [.. share.Select((s, c) => blind[c] ? 0 : s)];
         if (seen.Sum() <= 0)
             return new BelowCapture(setup.CaptureSpeed, double.NaN, null, "no velocity below capture is inside grid and fit window");
@@ -26,7 +27,11 @@ static class BelowCaptureFinder
         double high = value + double.Hypot(double.Hypot(highest - value, common * highest), z * absolute);
         // common factors cannot make nothing into something, nor the reverse: a lower end at zero stays
         double low = lowest == 0 ? 0 : Math.Max(0, value - double.Hypot(double.Hypot(value - lowest, common * value), z * absolute));
-        return new BelowCapture(setup.CaptureSpeed, estimate.Value, new Interval(low, high, settings.Confidence));
+        Interval strict = new StrictBounds(design, quoted.Main.Means).Of(seen, settings.Confidence, settings.Seed);
+        return new BelowCapture(setup.CaptureSpeed, estimate.Value, new Interval(low, high, settings.Confidence))
+        {
+            Strict = new Interval(strict.Low * Math.Max(0, 1 - common), strict.High * (1 + common), settings.Confidence),
+        };
     }
 
     /// <summary>What moves all numbers alike, relative; and what moves molecules across the capture velocity, in molecules, where the fit

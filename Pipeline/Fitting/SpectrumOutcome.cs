@@ -34,7 +34,12 @@ public sealed record VelocitySpectrum
 /// <param name="Value">Molecules a shot; unbiased, and so negative where the background fluctuates up; NaN where not determined.</param>
 /// <param name="Interval">With systematics; null where not determined.</param>
 /// <param name="NotDeterminedBecause">Null where the value stands.</param>
-public sealed record BelowCapture(double CaptureSpeed, double Value, Interval? Interval, string? NotDeterminedBecause = null);
+public sealed record BelowCapture(double CaptureSpeed, double Value, Interval? Interval, string? NotDeterminedBecause = null)
+{
+    /// <summary>Smallest and largest number over all non-negative spectra that the data allow, at the same confidence; what moves all
+    /// numbers alike is added to both ends, not in squares; null where not determined.</summary>
+    public Interval? Strict { get; init; }
+}
 
 /// <summary>A quantity with its name and unit.</summary>
 public sealed record NamedQuantity(string Name, string Unit, Quantity Quantity);

@@ -2,6 +2,7 @@ using System.Globalization;
 using Pipeline.Analysis;
 using Pipeline.Comparison;
 using Pipeline.Fitting;
+using Pipeline.Quantities;
 
 namespace Pipeline.Reports;
 
@@ -87,7 +88,9 @@ public static class RunPage
 
     static string BelowText(BelowCapture b) => b.NotDeterminedBecause is { } because ? $"not determined, because {because}"
         : string.Create(CultureInfo.InvariantCulture,
-            $"{Numbers.Digits(b.Interval!.Value.Low)} to {Numbers.Digits(b.Interval.Value.High)} with {100 * b.Interval.Value.Confidence:G3} % confidence (estimate {Numbers.Digits(b.Value)})");
+            $"{Numbers.Digits(b.Interval!.Value.Low)} to {Numbers.Digits(b.Interval.Value.High)} with {100 * b.Interval.Value.Confidence:G3} % confidence (estimate {Numbers.Digits(b.Value)}){StrictText(b.Strict)}");
+
+    static string StrictText(Interval? strict) => strict is { } s ? $"; {Numbers.Digits(s.Low)} to {Numbers.Digits(s.High)} over every non-negative spectrum that the signal allows" : "";
 
     static Markup Doubts(SpectrumOutcome fit) => Markup.Join(fit.Spectra.Select(s => Html.Of(
         $"<p class=\"note\">{(s == fit.Spectra[0] ? "Quoted" : "Beside it")}: {s.Estimator}, {s.Description}; deviance {Numbers.Digits(s.Deviance)} for {Numbers.Digits(s.DegreesOfFreedom)} degrees of freedom{(s.Doubt is { } d ? $". Doubt: {d}" : "")}.</p>")));
