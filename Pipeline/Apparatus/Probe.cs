@@ -32,4 +32,11 @@ public sealed record Probe
     /// <summary>Rms width of all that spreads the detuning between molecules or shots, apart from their speed along the beam:
     /// laser jitter and transverse Doppler shifts, Hz.</summary>
     public Measured DetuningSpread { get; init => field = Guard.NotNegative(value); }
+
+    /// <summary>The same probe, this much brighter.</summary>
+    public Probe WithLight(double times) => this with
+    {
+        Saturation = Saturation is { } s ? new Measured(s.Value * times, s.Sigma * times) : null,
+        ScatteringRate = ScatteringRate is { } r ? new Measured(r.Value * times, r.Sigma * times) : null,
+    };
 }

@@ -26,6 +26,8 @@ sealed class EstimatorRun
         });
     }
 
+    public string Name => _estimator.Name;
+
     /// <summary>The fit itself.</summary>
     public FittedSpectrum Main => _fit;
 
@@ -39,8 +41,8 @@ sealed class EstimatorRun
 
     public VelocitySpectrum ToSpectrum(NetSignal signal, string? weak)
     {
-        Quantity Moment(Func<SpectrumMoments, double> of) => weak is not null
-            ? Fitting.Quantity.NotDetermined(weak) : Quantity(r => of(r.Moments));
+        Quantity Moment(Func<SpectrumMoments, double> of) => (_fit.Refusal ?? weak) is { } because
+            ? Fitting.Quantity.NotDetermined(because) : Quantity(r => of(r.Moments));
         return new VelocitySpectrum
         {
             Estimator = _estimator.Name,
@@ -54,7 +56,7 @@ sealed class EstimatorRun
             Deviance = _fit.Deviance,
             DegreesOfFreedom = _fit.DegreesOfFreedom,
             Doubt = _fit.Doubt,
-            Number = Quantity(r => r.Moments.Number),
+            Number = _fit.Refusal is { } refusal ? Fitting.Quantity.NotDetermined(refusal) : Quantity(r => r.Moments.Number),
             Mean = Moment(m => m.Mean),
             Spread = Moment(m => m.Spread),
         };

@@ -25,6 +25,8 @@ abstract class FittedSpectrum
     public required double DegreesOfFreedom { get; init; }
     /// <summary>Why the fit is not to be trusted; null where it is.</summary>
     public string? Doubt { get; init; }
+    /// <summary>Why this estimator has no answer here; null where it has.</summary>
+    public string? Refusal { get; init; }
     /// <summary>What was chosen or found, for the report.</summary>
     public required string Description { get; init; }
     /// <summary>[cells][cells] how a true spectrum appears; null where the estimator has none.</summary>
@@ -42,7 +44,7 @@ readonly record struct Refitted(double[] Molecules, SpectrumMoments Moments);
 /// <summary>Every estimator. To add one, write its file and add its line.</summary>
 static class SpectrumEstimators
 {
-    public static IReadOnlyList<ISpectrumEstimator> All { get; } = [new UnfoldedEstimator(), new ShapeEstimator()];
+    public static IReadOnlyList<ISpectrumEstimator> All { get; } = [new UnfoldedEstimator(), new ShapeEstimator(), new DirectEstimator()];
 
     public static ISpectrumEstimator Named(string name) =>
         All.FirstOrDefault(m => m.Name == name) ?? throw new ArgumentOutOfRangeException(nameof(name), name, $"must be one of {string.Join(", ", All.Select(m => m.Name))}");

@@ -28,7 +28,7 @@ static class ScanSignal
         int[] edges = TimeEdges(run.Axis, scanned, settings);
         NetSignal[] parts = [.. points.Select(fit.Under)];
         double shots = points.Sum(p => p.Shots), monitor = points.Sum(p => p.BlockAblationMonitor.Sum()) / shots;
-        var axis = new SignalAxis(run.Axis.OriginSeconds, run.Axis.TickSeconds, [.. edges.Select(e => run.Axis.Edges[e])], [.. points.Select(p => p.Detuning)]);
+        var axis = new SignalAxis(run.Axis.OriginSeconds, run.Axis.TickSeconds, [.. edges.Select(e => run.Axis.Edges[e])], [.. points.Select(p => p.Detuning)], Light(points));
         double[] Stack(Func<NetSignal, double[]> of) => [.. parts.SelectMany(p => Rebin(of(p), edges))];
         return new NetSignal
         {
@@ -46,6 +46,14 @@ static class ScanSignal
     {
         double own = point.BlockAblationMonitor.Sum() / point.Shots;
         return point.Shots / shots * (double.IsFinite(own) && monitor > 0 && own > 0 ? own / monitor : 1);
+    }
+
+    /// <summary>[points] mean reading of the probe monitor relative to all of the scan; 1 without a monitor. A laser that drifts while it is scanned would
+    /// otherwise look like more molecules of one speed.</summary>
+    static double[] Light(IReadOnlyList<ShotGroup> points)
+    {
+        double mean = points.Sum(p => p.BlockProbeMonitor.Sum()) / points.Sum(p => p.Shots);
+        return [.. points.Select(p => p.BlockProbeMonitor.Sum() / p.Shots / mean).Select(l => double.IsFinite(l) && l > 0 ? l : 1)];
     }
 
     static IEnumerable<double> Live(NetSignal part, int[] edges, double share)

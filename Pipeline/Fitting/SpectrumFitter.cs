@@ -35,6 +35,9 @@ public static class SpectrumFitter
         string? weak = Weakness(window);
         var outcomes = SpectrumEstimators.All.OrderBy(e => e.Name == settings.Estimator ? 0 : 1)
             .Select(e => new EstimatorRun(e, window, responses, replicas, grid)).ToList();
+        // an estimator that has no answer is shown only where it was asked for
+        string[] refused = [.. outcomes.Skip(1).Where(o => o.Main.Refusal is not null && mode.Scanned == Scanned.Nothing).Select(o => $"{condition}: no {o.Name} spectrum, {o.Main.Refusal}")];
+        outcomes.RemoveAll(o => o.Main.Refusal is not null && o != outcomes[0]);
         return new SpectrumOutcome
         {
             Signal = signal,
@@ -44,7 +47,7 @@ public static class SpectrumFitter
             Below = BelowCaptureFinder.Find(window, responses.Main, setup, settings, yieldScatter, outcomes[0]),
             YieldScatter = yieldScatter,
             YieldFreedom = freedom,
-            Remarks = [.. signal.Remarks, .. UnseenRemarks(condition, window, responses.Main), .. BlockRemarks(run, condition), .. mode.Scanned == Scanned.DetuningAndTime ? [MapBias] : Array.Empty<string>()],
+            Remarks = [.. signal.Remarks, .. refused, .. UnseenRemarks(condition, window, responses.Main), .. BlockRemarks(run, condition), .. mode.Scanned == Scanned.DetuningAndTime ? [MapBias] : Array.Empty<string>()],
         };
     }
 

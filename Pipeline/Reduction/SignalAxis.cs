@@ -9,8 +9,9 @@ public sealed record SignalAxis
     /// <param name="tickSeconds">Sampling interval, s; positive.</param>
     /// <param name="edges">[bins + 1] ticks after the origin, rising.</param>
     /// <param name="points">[points] laser readings of a scan, Hz; null or empty: no scan.</param>
+    /// <param name="light">[points] probe light at each point relative to its mean over the scan; null or empty: the same at all.</param>
     /// <exception cref="ArgumentOutOfRangeException">A tick that is not positive, fewer than two edges, or edges that do not rise.</exception>
-    public SignalAxis(double originSeconds, double tickSeconds, IReadOnlyList<int> edges, IReadOnlyList<double>? points = null)
+    public SignalAxis(double originSeconds, double tickSeconds, IReadOnlyList<int> edges, IReadOnlyList<double>? points = null, IReadOnlyList<double>? light = null)
     {
         if (!double.IsFinite(originSeconds)) throw new ArgumentOutOfRangeException(nameof(originSeconds), originSeconds, "must be finite");
         if (!(tickSeconds > 0) || !double.IsFinite(tickSeconds)) throw new ArgumentOutOfRangeException(nameof(tickSeconds), tickSeconds, "must be positive");
@@ -21,6 +22,8 @@ public sealed record SignalAxis
         TickSeconds = tickSeconds;
         Edges = edges;
         Points = points ?? [];
+        Light = light is { Count: > 0 } ? light : [.. Points.Select(_ => 1.0)];
+        if (Light.Count != Points.Count) throw new ArgumentOutOfRangeException(nameof(light), Light.Count, $"must be one for each of {Points.Count} points");
     }
 
     public double OriginSeconds { get; }
@@ -29,6 +32,9 @@ public sealed record SignalAxis
 
     /// <summary>[points] laser readings of a scan, Hz; empty where there is none.</summary>
     public IReadOnlyList<double> Points { get; }
+
+    /// <summary>[points] probe light at each point relative to its mean over the scan.</summary>
+    public IReadOnlyList<double> Light { get; }
 
     /// <summary>Number of time bins.</summary>
     public int TimeBins => Edges.Count - 1;

@@ -93,7 +93,7 @@ public static class RunPage
     static string StrictText(Interval? strict) => strict is { } s ? $"; {Numbers.Digits(s.Low)} to {Numbers.Digits(s.High)} over every non-negative spectrum that the signal allows" : "";
 
     static Markup Doubts(SpectrumOutcome fit) => Markup.Join(fit.Spectra.Select(s => Html.Of(
-        $"<p class=\"note\">{(s == fit.Spectra[0] ? "Quoted" : "Beside it")}: {s.Estimator}, {s.Description}; deviance {Numbers.Digits(s.Deviance)} for {Numbers.Digits(s.DegreesOfFreedom)} degrees of freedom{(s.Doubt is { } d ? $". Doubt: {d}" : "")}.</p>")));
+        $"<p class=\"note\">{(s == fit.Spectra[0] ? "Quoted" : "Beside it")}: {s.Estimator}, {s.Description}{(double.IsFinite(s.Deviance) ? $"; deviance {Numbers.Digits(s.Deviance)} for {Numbers.Digits(s.DegreesOfFreedom)} degrees of freedom" : "")}{(s.Doubt is { } d ? $". Doubt: {d}" : "")}.</p>")));
 
     static Markup SpectrumPart(ConditionOutcome c)
     {

@@ -25,7 +25,7 @@ public sealed class ArrivalResponse : IResponseMode
             columns[c] = cells.Column(grid.Edge(c), grid.Edge(c + 1));
             Coupling.Apply(columns[c], axis, setup.Detector.CouplingTime.Value);
         }
-        return new ResponseMatrix(axis, grid, columns);
+        return new ResponseMatrix(axis, grid, columns) { ArrivalTimes = setup.Detector.CouplingTime.Value > 0 ? null : cells.MeanTimes(grid) };
     }
 }
 
@@ -40,6 +40,7 @@ sealed class ArrivalCells
     readonly TransitProfile _transit;
     readonly double _detail;
     readonly bool _alike;
+    readonly double _offset;
     ArrivalFront _slow, _fast;
 
     /// <param name="setup">The instrument.</param>
@@ -51,12 +52,16 @@ sealed class ArrivalCells
         _alike = alike;
         _emission = FilteredEmission.Of(setup.Emission, setup.Detector.TimeConstant.Value);
         _flight = flight;
-        _edges = [.. axis.EdgesInSeconds().Select(e => e + setup.Beamline.TriggerOffset.Value)];
+        _offset = setup.Beamline.TriggerOffset.Value;
+        _edges = [.. axis.EdgesInSeconds().Select(e => e + _offset)];
         _yield = new DetectionYield(setup);
         _transit = new TransitProfile(setup.Probe);
         _detail = Math.Max(0.1 * (_emission.Support.High - _emission.Support.Low), _edges[^1] * 1e-3);
         (_slow, _fast) = (new ArrivalFront(_edges), new ArrivalFront(_edges));
     }
+
+    /// <summary>[cells + 1] recorded time of arrival at each edge, in the mean over the pulse, s.</summary>
+    public double[] MeanTimes(VelocityGrid grid) => [.. grid.Edges().Select(v => _flight.TimeFor(v) + _emission.MeanTime - _offset)];
 
     /// <summary>[bins] counts for each molecule that is spread evenly over [from, to) m/s.</summary>
     public double[] Column(double from, double to)

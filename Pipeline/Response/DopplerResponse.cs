@@ -37,7 +37,7 @@ static class ScanColumns
         if (axis.Points.Count == 0) throw new ArgumentOutOfRangeException(nameof(axis), 0, "must have points of a scan");
         if (setup.Detector.CouplingTime.Value > 0)
             throw new DataFaultException("[detector] coupling_time", "a coupled detector in a scan", "direct coupling", "take scans with a directly coupled detector, or measure arrival times");
-        var yield = new ScanYield(setup, axis.Points, grid.Edge(grid.Cells));
+        var yield = new ScanYield(setup, axis, grid.Edge(grid.Cells));
         ArrivalCells? arrival = flight is AmbiguousFlight || setup.Emission is UnknownEmission ? null : new ArrivalCells(setup, flight, axis, alike: true);
         var columns = new double[grid.Cells][];
         for (int c = 0; c < grid.Cells; c++)

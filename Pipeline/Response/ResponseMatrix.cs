@@ -26,6 +26,10 @@ public sealed class ResponseMatrix
         }
     }
 
+    /// <summary>[cells + 1] recorded time at which molecules with the speed of each edge arrive in the mean, s after the trigger; null where arrival time
+    /// does not tell the speed.</summary>
+    public IReadOnlyList<double>? ArrivalTimes { get; init; }
+
     public SignalAxis Axis { get; }
     public VelocityGrid Grid { get; }
 

@@ -1,10 +1,12 @@
 using Pipeline.Apparatus;
+using Pipeline.Reduction;
 
 namespace Pipeline.Response;
 
 /// <summary>Counts that one molecule leaves at each point of a laser scan.</summary>
 /// <remarks>Photons at each detuning are counted by the depletion of the molecule there, not by a scaled line: pumping makes lines wider and
-/// flat. The rate along the transit is tabulated once against detuning, in steps of a hundredth of the natural width.</remarks>
+/// flat. The rate along the transit is tabulated against detuning, in steps of a hundredth of the natural width,
+/// for the dimmest and the brightest light of the scan.</remarks>
 sealed class ScanYield
 {
     /// <summary>Places in a cell at which counts are averaged.</summary>
@@ -12,23 +14,34 @@ sealed class ScanYield
     readonly Setup _setup;
     readonly double[] _lasers;
     readonly double _low, _step;
-    readonly double[] _exposure;
+    readonly double[] _light;
+    readonly double _dim, _bright;
+    readonly double[] _dimExposure, _brightExposure;
     readonly (double Shift, double Weight)[] _spread;
 
     /// <param name="setup">The instrument.</param>
-    /// <param name="points">[points] laser readings, Hz.</param>
+    /// <param name="axis">Laser readings and light of the points.</param>
     /// <param name="fastest">Highest speed that is asked for, m/s.</param>
-    public ScanYield(Setup setup, IReadOnlyList<double> points, double fastest)
+    public ScanYield(Setup setup, SignalAxis axis, double fastest)
     {
         _setup = setup;
-        _lasers = [.. points.Select(p => p - setup.Probe.AxisZero.Value)];
+        _lasers = [.. axis.Points.Select(p => p - setup.Probe.AxisZero.Value)];
+        _light = [.. axis.Light];
+        (_dim, _bright) = (_light.Min(), _light.Max());
         var yield = new DetectionYield(setup);
         _spread = yield.Spread;
         double doppler = Math.Abs(fastest * Math.Cos(setup.Probe.Angle.Value) / setup.Species.Wavelength.Value), lines = setup.Species.Lines.Max(l => Math.Abs(l.OffsetHz));
         double most = _lasers.Max(Math.Abs) + doppler + lines + _spread.Max(s => Math.Abs(s.Shift));
         _step = setup.Species.NaturalLinewidth.Value / 100;
         _low = -most - 2 * _step;
-        _exposure = [.. Enumerable.Range(0, (int)Math.Ceiling(2 * -_low / _step) + 2).Select(k => yield.ExposureTimesSpeed(_low + k * _step))];
+        int places = (int)Math.Ceiling(2 * -_low / _step) + 2;
+        double[] Table(double light)
+        {
+            var lit = new DetectionYield(setup with { Probe = setup.Probe.WithLight(light) });
+            return [.. Enumerable.Range(0, places).Select(k => lit.ExposureTimesSpeed(_low + k * _step))];
+        }
+        _dimExposure = Table(_dim);
+        _brightExposure = _bright > _dim ? Table(_bright) : _dimExposure;
     }
 
     /// <summary>[points] counts of a molecule that is evenly in [from, to) m/s.</summary>
@@ -42,15 +55,17 @@ sealed class ScanYield
             for (int p = 0; p < counts.Length; p++)
                 foreach (SpectralLine line in _setup.Species.Lines)
                     foreach ((double shift, double weight) in _spread)
-                        counts[p] += efficiency / PerCell * line.Weight / lines * weight * DetectionYield.Photons(ExposureAt(_lasers[p] + shift - line.OffsetHz - doppler) / speed, _setup.Species.PhotonLimit?.Value);
+                        counts[p] += efficiency / PerCell * line.Weight / lines * weight * DetectionYield.Photons(ExposureAt(p, _lasers[p] + shift - line.OffsetHz - doppler) / speed, _setup.Species.PhotonLimit?.Value);
         }
         return counts;
     }
 
-    double ExposureAt(double delta)
+    /// <summary>Between dimmest and brightest light in proportion.</summary>
+    double ExposureAt(int point, double delta)
     {
-        double place = (delta - _low) / _step;
+        double place = (delta - _low) / _step, share = _bright > _dim ? (_light[point] - _dim) / (_bright - _dim) : 0;
         int k = (int)place;
-        return _exposure[k] + (place - k) * (_exposure[k + 1] - _exposure[k]);
+        double dim = _dimExposure[k] + (place - k) * (_dimExposure[k + 1] - _dimExposure[k]);
+        return share == 0 ? dim : dim + share * (_brightExposure[k] + (place - k) * (_brightExposure[k + 1] - _brightExposure[k]) - dim);
     }
 }
