@@ -2,11 +2,12 @@ using System.Diagnostics;
 
 namespace Pipeline.Tests.Support;
 
-/// <summary>Python with h5py, an independent writer and reader of HDF5 files; tests that need it skip where it is absent.</summary>
+/// <summary>Python with h5py, an independent writer and reader of HDF5 files, or with SciPy; tests that need them skip where they are absent.</summary>
 static class Python
 {
     const string Program = "/usr/bin/python3";
     static readonly Lazy<bool> HasH5py = new(() => File.Exists(Program) && Exit("import h5py") == 0);
+    static readonly Lazy<bool> HasSciPy = new(() => File.Exists(Program) && Exit("import scipy") == 0);
 
     /// <summary>Runs a script with h5py as h5py, numpy as np and the file's path as path.</summary>
     public static string Write(string path, string script, string mode = "w", string options = "")
@@ -16,6 +17,19 @@ static class Python
         string error = process.StandardError.ReadToEnd(), output = process.StandardOutput.ReadToEnd();
         process.WaitForExit();
         Assert.True(process.ExitCode == 0, error);
+        return output;
+    }
+
+    /// <summary>What a script of the repository prints that needs SciPy.</summary>
+    /// <param name="script">Path below the repository.</param>
+    public static string Print(params string[] script)
+    {
+        Skip.IfNot(HasSciPy.Value, "no Python with SciPy on this machine");
+        using Process process = Start($"import runpy; runpy.run_path(r'{Path.Combine([Repository.Root, .. script])}', run_name='__main__')");
+        Task<string> error = process.StandardError.ReadToEndAsync();
+        string output = process.StandardOutput.ReadToEnd();
+        process.WaitForExit();
+        Assert.True(process.ExitCode == 0, error.Result);
         return output;
     }
 

@@ -12,6 +12,9 @@ static class Guard
     public static double NotNegative(double value, [CallerMemberName] string name = "") =>
         value >= 0 && double.IsFinite(value) ? value : throw new ArgumentOutOfRangeException(name, value, "must be >= 0 and finite");
 
+    public static double Finite(double value, [CallerMemberName] string name = "") =>
+        double.IsFinite(value) ? value : throw new ArgumentOutOfRangeException(name, value, "must be finite");
+
     public static Measured Positive(Measured value, [CallerMemberName] string name = "")
     {
         Positive(value.Value, name);

@@ -9,22 +9,17 @@ static class SpeciesReader
     public static Species Read(TomlTable root)
     {
         var sources = new Dictionary<string, string>(StringComparer.Ordinal);
-        Measured Sourced(string key, Dimension dimension)
-        {
-            if (!root.IsTable(key)) throw root.Refuse(key, root.Has(key) ? "a value without source" : "no such key", $"{key} = {{ value = \"...\", source = \"...\" }}", "name where the constant was published");
-            TomlTable constant = root.Table(key);
-            Measured value = constant.Quantity("value", dimension);
-            sources[key] = constant.Text("source");
-            constant.RefuseUnknown();
-            if (string.IsNullOrWhiteSpace(sources[key])) throw constant.Refuse("source", "an empty source", "where the constant was published", "name it");
-            return value;
-        }
-        Measured? Optional(string key, Dimension dimension) => root.Has(key) ? Sourced(key, dimension) : null;
+        var constants = new SourcedConstants(root, sources);
         string name = root.Text("name");
-        var (mass, wavelength, linewidth) = (Sourced("mass", Dimension.Mass), Sourced("wavelength", Dimension.Length), Sourced("natural_linewidth", Dimension.Frequency));
-        var (moment, limit) = (Optional("magnetic_moment", Dimension.MagneticMoment), Optional("photon_limit", Dimension.Fraction));
+        var (mass, wavelength, linewidth) = (constants.Required("mass", Dimension.Mass), constants.Required("wavelength", Dimension.Length), constants.Required("natural_linewidth", Dimension.Frequency));
+        var (moment, limit) = (constants.Optional("magnetic_moment", Dimension.MagneticMoment), constants.Optional("photon_limit", Dimension.Fraction));
         int ground = root.Has("ground_levels") ? root.Whole("ground_levels", 1, 1000) : 1, excited = root.Has("excited_levels") ? root.Whole("excited_levels", 1, 1000) : 1;
         SpectralLine[] lines = [.. root.Tables("lines").Select(ReadLine)];
+        if (root.OptionalTable("hyperfine") is { } hyperfine)
+        {
+            if (lines.Length > 0) throw root.Refuse("lines", "both [[lines]] and [hyperfine]", "one of them", "leave out the lines, or the constants that they follow from");
+            lines = HyperfineReader.Read(hyperfine, sources);
+        }
         root.RefuseUnknown();
         return root.Build(() => new Species
         {
