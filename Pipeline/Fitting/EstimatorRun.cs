@@ -54,6 +54,8 @@ sealed class EstimatorRun
             Deviance = _fit.Deviance,
             DegreesOfFreedom = _fit.DegreesOfFreedom,
             Doubt = _fit.Doubt,
+            Parameters = _fit.Parameters,
+            Choices = _fit.Choices,
             Number = Quantity(r => r.Moments.Number),
             Mean = Moment(m => m.Mean),
             Spread = Moment(m => m.Spread),

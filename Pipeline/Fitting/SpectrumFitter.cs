@@ -33,7 +33,7 @@ public static class SpectrumFitter
         Func<Setup, ResponseMatrix> build = s => mode.Build(s, condition, signal.Axis, grid);
         var responses = new ShiftedResponses(setup, build);
         string? weak = Weakness(window);
-        var outcomes = SpectrumEstimators.All.OrderBy(e => e.Name == settings.Estimator ? 0 : 1)
+        var outcomes = SpectrumEstimators.For(settings.Shape, settings.ShapePower).OrderBy(e => e.Name == settings.Estimator ? 0 : 1)
             .Select(e => new EstimatorRun(e, window, responses, replicas, grid)).ToList();
         return new SpectrumOutcome
         {
