@@ -52,13 +52,10 @@ sealed class ShapeEstimator(string shape, double power) : ISpectrumEstimator
 /// <summary>A family with its parameters, where repeated fits begin.</summary>
 sealed class ShapeSpectrum(IShapeFamily family, double[] parameters) : FittedSpectrum
 {
-    /// <summary>Leaves an error of less than a thousandth of a standard error.</summary>
-    const double Tolerance = 1e-7;
-
     public override Refitted Refit(FitWindow window, ResponseMatrix response)
     {
         var problem = new ShapeProblem(window, response, family);
-        double[] molecules = problem.Molecules(problem.Find(problem.Adapt(parameters), Tolerance).Parameters);
+        double[] molecules = problem.Molecules(problem.Repeat(problem.Adapt(parameters)));
         return new Refitted(molecules, SpectrumMoments.Of(response.Grid, molecules));
     }
 }
