@@ -31,7 +31,7 @@ sealed class ShapeEstimator(string shape, double power) : ISpectrumEstimator
             Doubt = DoubtOf(chosen, freedom, lowest),
             Description = Describe(chosen, searches.Length),
             Parameters = parameters,
-            Choices = [.. searches.Select(s => new ShapeChoice(s.Family.Name, s.Best.Deviance, s.Effective, s.Criterion, s == chosen, s.Trouble))],
+            Choices = [.. searches.Select(s => new ShapeChoice(s.Family.Name, s.Best.Deviance, s.Effective, s.Criterion, s.Best.Converged, s == chosen, s.Trouble))],
         };
     }
 

@@ -13,6 +13,7 @@ public sealed record ShapeParameter(string Name, string Unit, double Value, doub
 /// <param name="Deviance">Of the counts.</param>
 /// <param name="Parameters">Effective number; a spline's prior takes some.</param>
 /// <param name="Criterion">Information criterion; smaller is better.</param>
+/// <param name="Converged">Whether the search ended at a minimum; there may be trouble with it all the same.</param>
 /// <param name="Chosen">Whether its spectrum is the one given.</param>
 /// <param name="Trouble">Why it could not be chosen; null where it could.</param>
-public sealed record ShapeChoice(string Family, double Deviance, double Parameters, double Criterion, bool Chosen, string? Trouble);
+public sealed record ShapeChoice(string Family, double Deviance, double Parameters, double Criterion, bool Converged, bool Chosen, string? Trouble);
