@@ -15,9 +15,10 @@ sealed class ShapeEstimator(string shape, double power) : ISpectrumEstimator
     public FittedSpectrum Fit(FitWindow window, ResponseMatrix response)
     {
         var frame = new ShapeFrame(response.Grid, power, [.. new Design(window, response).Blind.Select(b => !b)]);
-        ShapeSearch[] searches = [.. ShapeFamilies.For(shape, frame).Select(f => ShapeSearch.Of(new ShapeProblem(window, response, f)))];
+        IReadOnlyList<IShapeFamily> asked = ShapeFamilies.For(shape, frame);
+        ShapeSearch[] searches = [.. asked.Concat(ShapeFamilies.Beside(asked, frame)).Select(f => ShapeSearch.Of(new ShapeProblem(window, response, f)))];
         // a family in trouble is taken only where all are
-        ShapeSearch chosen = searches.OrderBy(s => s.Trouble is null ? 0 : 1).ThenBy(s => s.Criterion).First();
+        ShapeSearch chosen = searches.Take(asked.Count).OrderBy(s => s.Trouble is null ? 0 : 1).ThenBy(s => s.Criterion).First();
         (ShapeParameter[] parameters, double lowest) = ShapeProfile.Of(chosen);
         double[] molecules = chosen.Problem.Molecules(chosen.Best.Parameters);
         double freedom = window.Count - chosen.Effective;
@@ -28,8 +29,8 @@ sealed class ShapeEstimator(string shape, double power) : ISpectrumEstimator
             Means = chosen.Problem.Means(chosen.Best.Parameters),
             Deviance = chosen.Best.Deviance,
             DegreesOfFreedom = freedom,
-            Doubt = DoubtOf(chosen, freedom, lowest),
-            Description = Describe(chosen, searches.Length),
+            Doubt = DoubtOf(chosen, freedom, lowest, searches),
+            Description = Describe(chosen, asked.Count),
             Parameters = parameters,
             Choices = [.. searches.Select(s => new ShapeChoice(s.Family.Name, s.Best.Deviance, s.Effective, s.Criterion, s.Best.Converged, s == chosen, s.Trouble))],
         };
@@ -38,9 +39,10 @@ sealed class ShapeEstimator(string shape, double power) : ISpectrumEstimator
     /// <summary>Deviances beyond this chance say that the shape is wrong.</summary>
     const double PoorFit = 1e-4;
 
-    static string? DoubtOf(ShapeSearch chosen, double freedom, double lowest) =>
+    static string? DoubtOf(ShapeSearch chosen, double freedom, double lowest, ShapeSearch[] searches) =>
         chosen.Trouble is { } trouble ? trouble
         : lowest < chosen.Best.Objective - 1e-3 ? "the shape fit is no minimum: its profile found a better one"
+        : searches.FirstOrDefault(s => s.Trouble is null && s.Criterion < chosen.Criterion) is { } simpler ? $"{simpler.Family.Phrase} would do as well by the criterion of Schwarz"
         : Tail.ChiSquare(chosen.Best.Deviance, freedom) < PoorFit ? $"{chosen.Family.Phrase} does not describe the signal"
         : null;
 

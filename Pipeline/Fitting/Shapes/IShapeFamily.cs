@@ -38,10 +38,8 @@ interface IShapeFamily
     /// <summary>[p] the same spectrum with its parts in the order of their names.</summary>
     double[] Ordered(double[] x) => x;
 
-    /// <summary>Why fewer parameters would do; null where all are needed.</summary>
-    /// <param name="x">[p].</param>
-    /// <param name="sigma">[p] standard errors.</param>
-    string? Degeneracy(ReadOnlySpan<double> x, ReadOnlySpan<double> sigma) => null;
+    /// <summary>Name of a family that is a case of this one, to be fitted beside it: where it does as well, this one's parameters mean nothing. Null: none.</summary>
+    string? Simpler => null;
 
     /// <summary>The formula with its values.</summary>
     string Describe(double[] x);

@@ -27,6 +27,10 @@ static class ShapeFamilies
         IShapeFamily[] made = [.. Makers.Where(m => name == ShapeNames.Best || m.Name == name).Select(m => m.Make(frame))];
         return made.Length > 0 ? made : throw new ArgumentOutOfRangeException(nameof(name), name, $"must be one of {string.Join(", ", ShapeNames.All)}");
     }
+
+    /// <summary>Cases of these families that are not among them.</summary>
+    public static IReadOnlyList<IShapeFamily> Beside(IReadOnlyList<IShapeFamily> families, ShapeFrame frame) =>
+        [.. families.Select(f => f.Simpler).OfType<string>().Where(s => families.All(f => f.Name != s)).SelectMany(s => For(s, frame))];
 }
 
 /// <summary>Names of the families, for the configuration.</summary>

@@ -7,7 +7,7 @@ namespace Pipeline.Fitting;
 /// errors by resampling. Taken for every parameter, so that nobody has to judge whether a profile is parabolic.</remarks>
 static class ShapeProfile
 {
-    const double Rise = 1, Precision = 1e-4, Tolerance = 1e-8;
+    const double Rise = 1, Precision = 1e-4, Tolerance = 1e-6;
     const int Most = 25;
 
     /// <summary>The parameters of a search, and the lowest objective met on the way: below that of the search, it was no minimum.</summary>

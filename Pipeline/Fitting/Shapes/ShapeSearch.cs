@@ -42,9 +42,8 @@ sealed record ShapeSearch(ShapeProblem Problem, PoissonFit Best, int Starts, int
     {
         if (!best.Converged) return "the shape fit did not converge";
         string[] bound = [.. problem.Family.Coordinates.Where((_, k) => best.AtBound[k]).Select(c => c.Name)];
-        double[] sigma = [.. Enumerable.Range(0, problem.Own).Select(k => best.Covariance is { } c ? Math.Sqrt(c[k * best.Parameters.Length + k]) : double.PositiveInfinity)];
-        if (problem.Family.Degeneracy(best.Parameters, sigma) is { } degenerate) return degenerate;
         if (bound.Length > 0) return $"the shape fit ran into a bound of its parameters ({string.Join(", ", bound)})";
+        if (best.Covariance is null) return "the data cannot tell the parameters of the shape apart";
         return reached < 2 && !problem.IsMinimum(best)
             ? string.Create(CultureInfo.InvariantCulture, $"only {reached} of the starts of the shape fit ended at its best, and that is no clear minimum") : null;
     }
