@@ -15,10 +15,12 @@ sealed class ShapeEstimator(string shape, double power) : ISpectrumEstimator
     public FittedSpectrum Fit(FitWindow window, ResponseMatrix response)
     {
         var frame = new ShapeFrame(response.Grid, power, [.. new Design(window, response).Blind.Select(b => !b)]);
-        IReadOnlyList<IShapeFamily> asked = ShapeFamilies.For(shape, frame);
+        IShapeFamily[] asked = [.. ShapeFamilies.For(shape, frame).Where(f => f.Coordinates.Count < window.Count)];
+        if (asked.Length == 0)
+            throw new DataFaultException("fit window", $"{window.Count} bins", $"more bins than the shape {shape} has parameters", "correct fit_from and fit_to in night.toml, or choose another shape");
         ShapeSearch[] searches = [.. asked.Concat(ShapeFamilies.Beside(asked, frame)).Select(f => ShapeSearch.Of(new ShapeProblem(window, response, f)))];
         // a family in trouble is taken only where all are
-        ShapeSearch chosen = searches.Take(asked.Count).OrderBy(s => s.Trouble is null ? 0 : 1).ThenBy(s => s.Criterion).First();
+        ShapeSearch chosen = searches.Take(asked.Length).OrderBy(s => s.Trouble is null ? 0 : 1).ThenBy(s => s.Criterion).First();
         (ShapeParameter[] parameters, double lowest) = ShapeProfile.Of(chosen);
         double[] molecules = chosen.Problem.Molecules(chosen.Best.Parameters);
         double freedom = window.Count - chosen.Effective;
@@ -30,7 +32,7 @@ sealed class ShapeEstimator(string shape, double power) : ISpectrumEstimator
             Deviance = chosen.Best.Deviance,
             DegreesOfFreedom = freedom,
             Doubt = DoubtOf(chosen, freedom, lowest, searches),
-            Description = Describe(chosen, asked.Count),
+            Description = Describe(chosen, asked.Length),
             Parameters = parameters,
             Choices = [.. searches.Select(s => new ShapeChoice(s.Family.Name, s.Best.Deviance, s.Effective, s.Criterion, s.Best.Converged, s == chosen, s.Trouble))],
         };

@@ -51,10 +51,11 @@ sealed record PoissonFit(double[] Parameters, double Deviance, double Prior, dou
     {
         if (Covariance is null) return false;
         int p = Parameters.Length;
-        int[] free = [.. Enumerable.Range(0, p).Where(k => !AtBound[k] && Covariance[k * p + k] > 0)];
+        int[] free = [.. Enumerable.Range(0, p).Where(k => !AtBound[k])];
         int m = free.Length;
         double[] sigma = [.. free.Select(k => Math.Sqrt(Covariance[k * p + k]))], gradient = objective.Gradient(Parameters);
-        if (free.Where((k, a) => Math.Abs(gradient[k]) * sigma[a] > 1e-3).Any()) return false;
+        // a parameter without information has no variance here: nothing says that this is its best value
+        if (sigma.Any(s => s == 0) || free.Where((k, a) => Math.Abs(gradient[k]) * sigma[a] > 1e-3).Any()) return false;
         var hessian = new double[m * m];
         for (int a = 0; a < m; a++)
         {

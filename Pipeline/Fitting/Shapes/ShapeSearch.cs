@@ -12,7 +12,7 @@ namespace Pipeline.Fitting;
 /// <param name="Trouble">Why the search is no success; null where it is.</param>
 sealed record ShapeSearch(ShapeProblem Problem, PoissonFit Best, int Starts, int Reached, double Effective, string? Trouble)
 {
-    /// <summary>Two searches are at the same minimum where their deviances differ by less than this, absolute or relative.</summary>
+    /// <summary>Two searches are at the same minimum where their deviances differ by less than this: one standard error makes one.</summary>
     const double Same = 1e-3;
 
     public static ShapeSearch Of(ShapeProblem problem)
@@ -21,7 +21,7 @@ sealed record ShapeSearch(ShapeProblem Problem, PoissonFit Best, int Starts, int
         PoissonFit best = fits.MinBy(f => f.Objective)!;
         double[] ordered = problem.Family.Ordered(best.Parameters);
         if (!ReferenceEquals(ordered, best.Parameters)) best = problem.Find(ordered);
-        int reached = fits.Count(f => f.Objective - best.Objective <= Same * Math.Max(1, Math.Abs(best.Objective)));
+        int reached = fits.Count(f => f.Objective - best.Objective <= Same);
         return new ShapeSearch(problem, best, fits.Length, reached, problem.Own - Taken(problem, best), TroubleOf(problem, best, reached));
     }
 
