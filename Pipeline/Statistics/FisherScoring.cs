@@ -17,27 +17,32 @@ delegate double[][] ColumnFunction(ReadOnlySpan<double> parameters, Span<double>
 /// <param name="variance">[n] of bins that count by their chi-square; null: Poisson counts.</param>
 sealed class FisherScoring(ColumnFunction model, double[] counts, IReadOnlyList<double[]> priors, double[]? variance)
 {
-    const int Most = 12;
+    const int Most = 25, MostHalvings = 4;
     const double SmallestMean = 1e-9;
 
-    /// <summary>Fall of the deviance that is left, by the quadratic model: 1e-10 is 1e-5 of a standard error.</summary>
-    const double Left = 1e-10;
+    /// <summary>Fall of the deviance in the last step, by the quadratic model: 1e-8 is 1e-4 of a standard error.</summary>
+    const double Left = 1e-8;
 
-    /// <summary>The solution, or null where the way there is not straight: a deviance that rises, a bound, an information that is singular.</summary>
+    /// <summary>The solution, or null where the way there is not straight: steps that do not get shorter, a bound, an information that is singular.</summary>
     public double[]? Find(double[] start, double[] low, double[] high)
     {
         int p = start.Length;
-        double[] x = [.. start], means = new double[counts.Length], information = new double[p * p];
+        double[] x = [.. start], step = new double[p], means = new double[counts.Length], information = new double[p * p];
         double before = double.PositiveInfinity;
-        for (int round = 0; round < Most; round++)
+        for (int round = 0, halvings = 0; round < Most; round++)
         {
             double[][] columns = model(x, means);
             double objective = Objective(means, x);
-            if (!(objective <= before + 1e-9 * Math.Abs(before))) return null;
-            before = objective;
-            double[] step = Score(columns, means, x, information);
-            double[] score = [.. step];
+            if (!(objective <= before + 1e-9 * Math.Abs(before)))
+            {
+                if (++halvings > MostHalvings) return null;
+                for (int k = 0; k < p; k++) x[k] -= step[k] *= 0.5;
+                continue;
+            }
+            (before, halvings) = (objective, 0);
+            double[] score = Score(columns, means, x, information);
             if (!Cholesky.Factor(information, p, p)) return null;
+            score.CopyTo(step, 0);
             Cholesky.Solve(information, p, p, step);
             for (int k = 0; k < p; k++)
                 if (!((x[k] += step[k]) > low[k] && x[k] < high[k])) return null;
