@@ -32,6 +32,18 @@ public sealed class ConfigurationTests : IDisposable
         Assert.Equal(2, lab.Predictions.Count);
     }
 
+    [Theory]
+    [InlineData("best", "2", 2)]
+    [InlineData("two-beams", "0", 0)]
+    [InlineData("spline", "6", 6)]
+    public void Read_Shape_IsThatOfTheFit(string shape, string power, double expected)
+    {
+        string path = Path.Combine(_folder, "night.toml");
+        File.WriteAllText(path, File.ReadAllText(path).Replace("shape = \"supersonic\"", $"shape = \"{shape}\"", StringComparison.Ordinal).Replace("shape_power = 3", $"shape_power = {power}", StringComparison.Ordinal));
+        Pipeline.Fitting.FitSettings fit = ConfigurationReader.Read(_folder).Analysis.Fit;
+        Assert.Equal((shape, expected), (fit.Shape, fit.ShapePower));
+    }
+
     /// <summary>One file with two detectors gives two runs, each with its own efficiency.</summary>
     [Fact]
     public void Read_SecondDetector_GivesRunsOfItsOwn()
@@ -101,6 +113,9 @@ public sealed class ConfigurationTests : IDisposable
     [InlineData("species/SrF.toml", "mass = {", "masses = {", "mass", "a")]
     [InlineData("night.toml", "background = \"steady\"", "background = \"stedy\"", "[analysis] background", "did you mean \"steady\"?")]
     [InlineData("night.toml", "estimator = \"unfolded\"", "estimator = \"magic\"", "[analysis] estimator", "unfolded")]
+    [InlineData("night.toml", "shape = \"supersonic\"", "shape = \"supersonc\"", "[analysis] shape", "did you mean \"supersonic\"?")]
+    [InlineData("night.toml", "shape_power = 3", "shape_power = 6.1", "[analysis] shape_power", "from 0 to 6")]
+    [InlineData("night.toml", "shape_power = 3", "shape_power = -0.1", "[analysis] shape_power", "from 0 to 6")]
     [InlineData("night.toml", "layout = \"csv-wide\"", "layout = \"csv-wid\"", "[runs] layout", "did you mean \"csv-wide\"?")]
     [InlineData("night.toml", "mode = \"arrival\"", "mode = \"arival\"", "[runs] mode", "did you mean \"arrival\"?")]
     [InlineData("night.toml", "velocity_step = \"2 m/s\"", "velocity_step = \"200 m/s\"", "[analysis] velocity_step", "8 to 400 cells")]

@@ -1,6 +1,7 @@
 using System.Diagnostics;
 using System.Security.Cryptography;
 using System.Text;
+using System.Text.Json;
 using System.Text.RegularExpressions;
 using Pipeline.Analysis;
 using Pipeline.Apparatus;
@@ -30,6 +31,24 @@ public partial class PageTests
             Assert.Contains(part, page, StringComparison.Ordinal);
         Assert.Equal(2, SvgStart().Count(page) - KeySvg().Count(page));
         Assert.InRange(Encoding.UTF8.GetByteCount(page), 10_000, 1_000_000);
+    }
+
+    /// <summary>The choice among families is seen on the page and by programs, and the intervals with it; a single family has no choice to show.</summary>
+    [Fact]
+    public void Render_BestShape_ShowsEveryFamily()
+    {
+        RunOutcome run = Make("0930-test", "off", "best");
+        VelocitySpectrum shape = run.Conditions[0].Fit.Spectra.Single(s => s.Estimator == "shape");
+        string page = RunPage.Render(run), plain = RunPage.Render(Made.Value);
+        JsonElement json = JsonDocument.Parse(Pipeline.Results.ResultJson.Render(run)).RootElement.GetProperty("conditions").GetProperty("off").GetProperty("estimators").GetProperty("shape");
+        Assert.Equal(4, shape.Choices.Count);
+        Assert.Equal(shape.Choices.Select(c => c.Family), json.GetProperty("families").EnumerateArray().Select(f => f.GetProperty("family").GetString()));
+        Assert.Equal(shape.Choices.Single(c => c.Chosen).Family, json.GetProperty("families").EnumerateArray().Single(f => f.GetProperty("chosen").GetBoolean()).GetProperty("family").GetString());
+        Assert.Equal(shape.Parameters.Select(p => p.Low), json.GetProperty("parameters").EnumerateArray().Select(p => p.GetProperty("low").GetDouble()));
+        foreach (ShapeChoice choice in shape.Choices) Assert.Contains($"<td>{choice.Family}</td><td class=\"n\">", page, StringComparison.Ordinal);
+        Assert.Contains("<td>taken", page, StringComparison.Ordinal);
+        Assert.DoesNotContain("<td>taken", plain, StringComparison.Ordinal);
+        Assert.Contains("<td>alpha (m/s)</td>", plain, StringComparison.Ordinal);
     }
 
     [Fact]
@@ -124,7 +143,7 @@ public partial class PageTests
         Directory.Delete(folder, recursive: true);
     }
 
-    static RunOutcome Make(string name, string condition)
+    static RunOutcome Make(string name, string condition, string shape = "supersonic")
     {
         Setup setup = TestSetups.OneMetre(new GaussianEmission { Delay = new(1e-4), Width = new(5e-5) }, 20, null);
         setup = setup with
@@ -141,7 +160,7 @@ public partial class PageTests
         var settings = new AnalysisSettings
         {
             Reduction = new ReductionSettings(), Background = "steady", Comparison = new ComparisonSettings(),
-            Fit = new FitSettings { FromSeconds = 1.5e-3, VelocityFrom = 20, VelocityTo = 300, VelocityStep = 5, Replicas = 50 },
+            Fit = new FitSettings { FromSeconds = 1.5e-3, VelocityFrom = 20, VelocityTo = 300, VelocityStep = 5, Replicas = 50, Shape = shape },
         };
         double[] zeros = new double[500], speeds = [.. Enumerable.Range(0, 500).Select(k => 110 + 80.0 * k / 500)];
         var list = new MoleculeList([.. zeros.Select(_ => 1e-4)], zeros, speeds, zeros, zeros, zeros, zeros, [.. zeros.Select(_ => 0.7)], MoleculeWeighting.Crossings);

@@ -67,6 +67,44 @@ public class PoissonFitTests
         Assert.Equal(6.60872, fit.Deviance, 4);
     }
 
+    /// <summary>20 + x + x^2 and 20 - x + x^2 against 25 and 25: at zero the gradient vanishes and the expected information is 2, but the sum of
+    /// squares falls on both sides, 2 - 4 * 5 &lt; 0; minima are at ±sqrt(4.5).</summary>
+    [Theory]
+    [InlineData(0, false)]
+    [InlineData(2.1213203435596424, true)]
+    [InlineData(2, false)]
+    public void IsMinimum_StationaryPoint_IsToldByItsCurvature(double at, bool minimum)
+    {
+        static void Parabolas(ReadOnlySpan<double> x, Span<double> means, Span<double> slopes)
+        {
+            (means[0], means[1]) = (20 + x[0] + x[0] * x[0], 20 - x[0] + x[0] * x[0]);
+            if (!slopes.IsEmpty) (slopes[0], slopes[1]) = (1 + 2 * x[0], -1 + 2 * x[0]);
+        }
+        var objective = new PoissonObjective(Parabolas, [25, 25], 1, [], [1, 1]);
+        var there = new PoissonFit([at], 0, 0, [0.5], Converged: true, [false]);
+        Assert.Equal(minimum, there.IsMinimum(objective));
+        // a search that begins on the top stays there, and calls it converged
+        if (at == 0) Assert.True(PoissonFit.Find(objective, [0], [-10], [10]).Converged);
+    }
+
+    /// <summary>Both ways to the minimum end there; what the quick one cannot do, it says.</summary>
+    [Fact]
+    public void Scoring_FromNearby_EndsWhereTheSearchDoes()
+    {
+        double[] counts = [2, 5, 3, 67, 503, 1416, 2120, 2104, 1596, 1013, 573, 306, 161, 80, 38, 23, 15, 5, 3, 6];
+        double[][] Columns(ReadOnlySpan<double> x, Span<double> means)
+        {
+            var slopes = new double[80];
+            Model(x, means, slopes);
+            return [.. Enumerable.Range(0, 4).Select(k => Enumerable.Range(0, 20).Select(i => slopes[i * 4 + k]).ToArray())];
+        }
+        var scoring = new FisherScoring(Columns, counts, [], null);
+        double[] found = scoring.Find([9900, 141, 29, 2.5], Low, High)!, expected = PoissonFit.Find(Model, counts, Start, Low, High).Parameters;
+        for (int k = 0; k < 4; k++) Assert.Equal(expected[k], found[k], 1e-6 * expected[k]);
+        Assert.Null(scoring.Find([9900, 141, 29, 2.5], Low, [9950, 300, 100, 100]));
+        Assert.Null(scoring.Find([1, 299, 5.1, 99], Low, High));
+    }
+
     /// <remarks>Constant fitted to 0 1 3 7 12 9 4 2 0 1: deviance 40.72899027 at the mean 3.9 (Baker and Cousins 1984; value recomputed by
     /// this team).</remarks>
     [Fact]

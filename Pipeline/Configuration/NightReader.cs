@@ -93,9 +93,17 @@ static class NightReader
         {
             FromSeconds = start, ToSeconds = end, VelocityFrom = from, VelocityTo = to, VelocityStep = step, Confidence = confidence,
             Estimator = a.Has("estimator") ? a.Choice("estimator", choices.Estimators) : plain.Estimator,
+            Shape = a.Has("shape") ? a.Choice("shape", ShapeNames.All) : plain.Shape,
+            ShapePower = ShapePower(a, plain),
             Replicas = a.Has("replicas") ? a.Whole("replicas", 50, 100_000) : plain.Replicas,
             Seed = a.Has("seed") ? a.Whole("seed", 0, int.MaxValue) : plain.Seed,
         };
+    }
+
+    static double ShapePower(TomlTable a, FitSettings plain)
+    {
+        double power = a.Has("shape_power") ? a.Number("shape_power") : plain.ShapePower;
+        return power is >= 0 and <= 6 ? power : throw a.Refuse("shape_power", $"{power:G4}", "a power of v from 0 to 6: 3 for the flux of a drifting gas, 2 in another convention");
     }
 
     static ComparisonSettings ReadComparison(TomlTable? t)

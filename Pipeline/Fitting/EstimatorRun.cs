@@ -56,6 +56,8 @@ sealed class EstimatorRun
             Deviance = _fit.Deviance,
             DegreesOfFreedom = _fit.DegreesOfFreedom,
             Doubt = _fit.Doubt,
+            Parameters = _fit.Parameters,
+            Choices = _fit.Choices,
             Number = _fit.Refusal is { } refusal ? Fitting.Quantity.NotDetermined(refusal) : Quantity(r => r.Moments.Number),
             Mean = Moment(m => m.Mean),
             Spread = Moment(m => m.Spread),

@@ -31,6 +31,10 @@ abstract class FittedSpectrum
     public required string Description { get; init; }
     /// <summary>[cells][cells] how a true spectrum appears; null where the estimator has none.</summary>
     public double[][]? Resolution { get; init; }
+    /// <summary>What the spectrum is made from; empty where it has no parameters of meaning.</summary>
+    public IReadOnlyList<ShapeParameter> Parameters { get; init; } = [];
+    /// <summary>Every family that was fitted; empty where there are none.</summary>
+    public IReadOnlyList<ShapeChoice> Choices { get; init; } = [];
 
     /// <summary>The result from other data, or another response, with everything chosen as in this fit.</summary>
     public abstract Refitted Refit(FitWindow window, ResponseMatrix response);
@@ -44,7 +48,11 @@ readonly record struct Refitted(double[] Molecules, SpectrumMoments Moments);
 /// <summary>Every estimator. To add one, write its file and add its line.</summary>
 static class SpectrumEstimators
 {
-    public static IReadOnlyList<ISpectrumEstimator> All { get; } = [new UnfoldedEstimator(), new ShapeEstimator(), new DirectEstimator()];
+    /// <summary>With these settings.</summary>
+    public static IReadOnlyList<ISpectrumEstimator> For(string shape, double shapePower) => [new UnfoldedEstimator(), new ShapeEstimator(shape, shapePower), new DirectEstimator()];
+
+    /// <summary>With the settings that hold where nothing is said.</summary>
+    public static IReadOnlyList<ISpectrumEstimator> All { get; } = For(FitSettings.UsualShape, FitSettings.UsualShapePower);
 
     public static ISpectrumEstimator Named(string name) =>
         All.FirstOrDefault(m => m.Name == name) ?? throw new ArgumentOutOfRangeException(nameof(name), name, $"must be one of {string.Join(", ", All.Select(m => m.Name))}");

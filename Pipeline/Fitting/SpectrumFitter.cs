@@ -33,7 +33,7 @@ public static class SpectrumFitter
         Func<Setup, ResponseMatrix> build = s => mode.Build(s, condition, signal.Axis, grid);
         var responses = new ShiftedResponses(setup, build);
         string? weak = Weakness(window);
-        var outcomes = SpectrumEstimators.All.OrderBy(e => e.Name == settings.Estimator ? 0 : 1)
+        var outcomes = SpectrumEstimators.For(settings.Shape, settings.ShapePower).OrderBy(e => e.Name == settings.Estimator ? 0 : 1)
             .Select(e => new EstimatorRun(e, window, responses, replicas, grid)).ToList();
         // an estimator that has no answer is shown only where it was asked for
         string[] refused = [.. outcomes.Skip(1).Where(o => o.Main.Refusal is not null && mode.Scanned == Scanned.Nothing).Select(o => $"{condition}: no {o.Name} spectrum, {o.Main.Refusal}")];

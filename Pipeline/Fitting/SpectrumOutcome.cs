@@ -24,6 +24,10 @@ public sealed record VelocitySpectrum
     public required double DegreesOfFreedom { get; init; }
     /// <summary>Why it is not to be trusted; null where it is.</summary>
     public string? Doubt { get; init; }
+    /// <summary>What the spectrum is made from; empty where it has no parameters of meaning.</summary>
+    public IReadOnlyList<ShapeParameter> Parameters { get; init; } = [];
+    /// <summary>Every family that was fitted; empty where there are none.</summary>
+    public IReadOnlyList<ShapeChoice> Choices { get; init; } = [];
     public required Quantity Number { get; init; }
     public required Quantity Mean { get; init; }
     public required Quantity Spread { get; init; }

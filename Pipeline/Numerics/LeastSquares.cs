@@ -23,15 +23,20 @@ static class LeastSquares
 {
     const int MostSteps = 2000;
 
+    /// <summary>Gradient at which a search ends by itself, relative to residuals and derivatives: near working precision.</summary>
+    public const double Tightest = 1e-13;
+
     /// <param name="residual">The problem.</param>
     /// <param name="count">Number of residuals, at least the number of parameters.</param>
     /// <param name="start">[p], inside the bounds.</param>
     /// <param name="low">[p] lower bounds, or null.</param>
     /// <param name="high">[p] upper bounds, or null.</param>
-    public static LeastSquaresResult Minimise(ResidualFunction residual, int count, double[] start, double[]? low = null, double[]? high = null)
+    /// <param name="tolerance">Gradient at which the search ends, relative to residuals and derivatives.</param>
+    public static LeastSquaresResult Minimise(
+        ResidualFunction residual, int count, double[] start, double[]? low = null, double[]? high = null, double tolerance = Tightest)
     {
         if (count < start.Length) throw new ArgumentOutOfRangeException(nameof(count), count, $"needs at least {start.Length} residuals");
-        var search = new LeastSquaresSearch(residual, count, start, low, high);
+        var search = new LeastSquaresSearch(residual, count, start, low, high, tolerance);
         for (int step = 0; step < MostSteps && !search.Finished; step++) search.Step();
         return search.Result();
     }

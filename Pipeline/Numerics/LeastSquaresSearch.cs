@@ -7,13 +7,14 @@ sealed class LeastSquaresSearch
     readonly int _n, _p;
     readonly double[]? _low, _high;
     readonly double[] _x, _trial, _r, _trialR, _j, _scale, _step, _a, _b;
+    readonly double _tolerance;
     double _sum, _damping = 1e-3, _growth = 2;
     int _accepted;
     bool _converged;
 
-    public LeastSquaresSearch(ResidualFunction residual, int count, double[] start, double[]? low, double[]? high)
+    public LeastSquaresSearch(ResidualFunction residual, int count, double[] start, double[]? low, double[]? high, double tolerance)
     {
-        (_residual, _n, _p, _low, _high) = (residual, count, start.Length, low, high);
+        (_residual, _n, _p, _low, _high, _tolerance) = (residual, count, start.Length, low, high, tolerance);
         _x = [.. start];
         (_trial, _scale, _step) = (new double[_p], new double[_p], new double[_p]);
         (_r, _trialR, _j) = (new double[_n], new double[_n], new double[_n * _p]);
@@ -105,7 +106,7 @@ sealed class LeastSquaresSearch
         for (int k = 0; k < _p; k++)
         {
             if (held[k] || _scale[k] == 0) continue;
-            if (Math.Abs(Gradient(k)) > 1e-13 * norm * ColumnNorm(k)) return false;
+            if (Math.Abs(Gradient(k)) > _tolerance * norm * ColumnNorm(k)) return false;
         }
         return true;
     }

@@ -32,7 +32,7 @@ static class Numbers
     public static string Decimal(double value, int decimals) => double.IsFinite(value) ? Round(value, decimals) : "–";
 
     /// <summary>Decimals at which an error shows two digits; negative where it is above 100.</summary>
-    static int Decimals(double error) => error > 0 ? Math.Clamp(1 - (int)Math.Floor(Math.Log10(error)), -9, 9) : 3;
+    public static int Decimals(double error) => error > 0 ? Math.Clamp(1 - (int)Math.Floor(Math.Log10(error)), -9, 9) : 3;
 
     static string Round(double value, int decimals)
     {

@@ -48,6 +48,7 @@ public static class RunPage
         {ConditionFigures.Key(SignalKey(c))}
         {ConditionFigures.Signal(c)}
         {SpectrumPart(c)}
+        {ShapeTables.Of(c.Fit)}
         {Budget(c.Fit)}
         """);
 

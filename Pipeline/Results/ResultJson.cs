@@ -52,6 +52,15 @@ static class ResultJson
     {
         ["description"] = s.Description, ["deviance"] = Number(s.Deviance), ["degrees_of_freedom"] = Number(s.DegreesOfFreedom), ["doubt"] = s.Doubt,
         ["molecules_per_shot"] = Quantity(s.Number), ["mean_velocity_m_per_s"] = Quantity(s.Mean), ["spread_m_per_s"] = Quantity(s.Spread),
+        ["parameters"] = new JsonArray([.. s.Parameters.Select(p => (JsonNode)new JsonObject
+        {
+            ["name"] = p.Name, ["unit"] = p.Unit, ["value"] = Number(p.Value), ["low"] = Number(p.Low), ["high"] = Number(p.High),
+        })]),
+        ["families"] = new JsonArray([.. s.Choices.Select(f => (JsonNode)new JsonObject
+        {
+            ["family"] = f.Family, ["deviance"] = Number(f.Deviance), ["parameters"] = Number(f.Parameters), ["criterion"] = Number(f.Criterion),
+            ["chosen"] = f.Chosen, ["converged"] = f.Converged, ["trouble"] = f.Trouble,
+        })]),
     };
 
     static JsonObject Quantity(Quantity q)

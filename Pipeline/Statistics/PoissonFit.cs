@@ -11,70 +11,62 @@ delegate void MeanFunction(ReadOnlySpan<double> parameters, Span<double> means, 
 /// <summary>Maximum-likelihood fit of a model to Poisson counts.</summary>
 /// <param name="Parameters">[p].</param>
 /// <param name="Deviance">Of the counts, without the priors.</param>
+/// <param name="Prior">Sum of squares of what carries a prior.</param>
 /// <param name="Covariance">[p * p] row-major, inverse of the expected information; null where that is singular.</param>
 /// <param name="Converged">Whether a minimum was reached.</param>
 /// <param name="AtBound">[p].</param>
-sealed record PoissonFit(double[] Parameters, double Deviance, double[]? Covariance, bool Converged, bool[] AtBound)
+sealed record PoissonFit(double[] Parameters, double Deviance, double Prior, double[]? Covariance, bool Converged, bool[] AtBound)
 {
-    /// <summary>No mean is taken as smaller, so that an empty bin with a vanishing model does not stop the search.</summary>
-    const double SmallestMean = 1e-9;
+    /// <summary>What was minimised.</summary>
+    public double Objective => Deviance + Prior;
 
     /// <param name="model">Means and derivatives.</param>
     /// <param name="counts">[n] observed.</param>
     /// <param name="start">[p].</param>
     /// <param name="low">[p].</param>
     /// <param name="high">[p].</param>
-    /// <param name="priorFrom">Parameters from this index on carry a unit normal prior about zero.</param>
-    /// <param name="variance">[n] of bins that are not Poisson counts, and then count by their chi-square; null: all are.</param>
-    public static PoissonFit Find(MeanFunction model, double[] counts, double[] start, double[] low, double[] high, int? priorFrom = null,
-        double[]? variance = null)
+    public static PoissonFit Find(MeanFunction model, double[] counts, double[] start, double[] low, double[] high) =>
+        Find(new PoissonObjective(model, counts, start.Length, [], null), start, low, high);
+
+    /// <param name="objective">The problem.</param>
+    /// <param name="start">[p].</param>
+    /// <param name="low">[p].</param>
+    /// <param name="high">[p]; a parameter whose bounds coincide is held.</param>
+    /// <param name="tolerance">Gradient at which the search ends, relative to residuals and derivatives.</param>
+    public static PoissonFit Find(PoissonObjective objective, double[] start, double[] low, double[] high, double tolerance = LeastSquares.Tightest)
     {
-        int n = counts.Length, p = start.Length, first = priorFrom ?? p;
-        var means = new double[n];
-        var slopes = new double[n * p];
-        void Residual(ReadOnlySpan<double> x, Span<double> r, Span<double> j)
-        {
-            model(x, means, j.IsEmpty ? [] : slopes);
-            for (int i = 0; i < n; i++)
-            {
-                r[i] = One(i, out double d);
-                if (!j.IsEmpty) for (int k = 0; k < p; k++) j[i * p + k] = d * slopes[i * p + k];
-            }
-            for (int k = first; k < p; k++)
-            {
-                int row = n + k - first;
-                r[row] = x[k];
-                if (j.IsEmpty) continue;
-                j.Slice(row * p, p).Clear();
-                j[row * p + k] = 1;
-            }
-        }
-        double One(int i, out double slope)
-        {
-            if (variance is null) return PoissonDeviance.Residual(counts[i], Math.Max(means[i], SmallestMean), out slope);
-            slope = 1 / Math.Sqrt(variance[i]);
-            return (means[i] - counts[i]) * slope;
-        }
-        LeastSquaresResult fit = LeastSquares.Minimise(Residual, n + p - first, start, low, high);
-        model(fit.Parameters, means, slopes);
-        double deviance = 0;
-        for (int i = 0; i < n; i++) deviance += Square(One(i, out _));
-        double[] weights = [.. means.Select((m, i) => 1 / (variance?[i] ?? Math.Max(m, SmallestMean)))];
-        return new PoissonFit(fit.Parameters, deviance, Invert(Information(weights, slopes, p, first), p, fit.AtBound), fit.Converged, fit.AtBound);
+        int p = start.Length;
+        LeastSquaresResult fit = LeastSquares.Minimise(objective.Fill, objective.Residuals, start, low, high, tolerance);
+        var residuals = new double[objective.Residuals];
+        objective.Fill(fit.Parameters, residuals, []);
+        int n = objective.Means.Length;
+        (double deviance, double prior) = (Cholesky.Dot(residuals.AsSpan(0, n), residuals.AsSpan(0, n)), Cholesky.Dot(residuals.AsSpan(n), residuals.AsSpan(n)));
+        return new PoissonFit(fit.Parameters, deviance, prior, Invert(objective.Information(), p, fit.AtBound), fit.Converged, fit.AtBound);
     }
 
-    static double Square(double x) => x * x;
-
-    static double[] Information(double[] weights, double[] slopes, int p, int priorFrom)
+    /// <summary>Whether the sum of squares rises in every direction that the bounds leave: the gradient is far below what one standard error
+    /// makes, and the matrix of second derivatives is positive definite.</summary>
+    /// <remarks>Central differences of the analytic gradient, in steps of a hundredth of a standard error.</remarks>
+    public bool IsMinimum(PoissonObjective objective)
     {
-        var information = new double[p * p];
-        for (int i = 0; i < weights.Length; i++)
+        if (Covariance is null) return false;
+        int p = Parameters.Length;
+        int[] free = [.. Enumerable.Range(0, p).Where(k => !AtBound[k])];
+        int m = free.Length;
+        double[] sigma = [.. free.Select(k => Math.Sqrt(Covariance[k * p + k]))], gradient = objective.Gradient(Parameters);
+        // a parameter without information has no variance here: nothing says that this is its best value
+        if (sigma.Any(s => s == 0) || free.Where((k, a) => Math.Abs(gradient[k]) * sigma[a] > 1e-3).Any()) return false;
+        var hessian = new double[m * m];
+        for (int a = 0; a < m; a++)
         {
-            for (int a = 0; a < p; a++)
-                for (int b = 0; b < p; b++) information[a * p + b] += weights[i] * slopes[i * p + a] * slopes[i * p + b];
+            double[] up = [.. Parameters], down = [.. Parameters];
+            (up[free[a]], down[free[a]]) = (up[free[a]] + 0.01 * sigma[a], down[free[a]] - 0.01 * sigma[a]);
+            (double[] above, double[] below) = (objective.Gradient(up), objective.Gradient(down));
+            for (int b = 0; b < m; b++) hessian[a * m + b] = (above[free[b]] - below[free[b]]) * sigma[b] / 0.02;
         }
-        for (int k = priorFrom; k < p; k++) information[k * p + k] += 1;
-        return information;
+        for (int a = 0; a < m; a++)
+            for (int b = 0; b < a; b++) hessian[a * m + b] = 0.5 * (hessian[a * m + b] + hessian[b * m + a]);
+        return Cholesky.Factor(hessian, m, m);
     }
 
     /// <summary>Inverse over the parameters that are off their bounds and move the means; the others get zero variance.</summary>
