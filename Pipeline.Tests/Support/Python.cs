@@ -8,12 +8,25 @@ static class Python
     const string Program = "/usr/bin/python3";
     static readonly Lazy<bool> HasH5py = new(() => File.Exists(Program) && Exit("import h5py") == 0);
 
+    static readonly Lazy<bool> HasScipy = new(() => File.Exists(Program) && Exit("import scipy.stats") == 0);
+
     /// <summary>Runs a script with h5py as h5py, numpy as np and the file's path as path.</summary>
     public static string Write(string path, string script, string mode = "w", string options = "")
     {
         Skip.IfNot(HasH5py.Value, "no Python with h5py on this machine");
         using Process process = Start($"import h5py, json, numpy as np\npath = r'{path}'\nf = h5py.File(path, '{mode}'{options})\n{script}\nf.close()");
         string error = process.StandardError.ReadToEnd(), output = process.StandardOutput.ReadToEnd();
+        process.WaitForExit();
+        Assert.True(process.ExitCode == 0, error);
+        return output;
+    }
+
+    /// <summary>What a script prints that needs scipy.</summary>
+    public static string Scipy(string script)
+    {
+        Skip.IfNot(HasScipy.Value, "no Python with scipy on this machine");
+        using Process process = Start(script);
+        string output = process.StandardOutput.ReadToEnd(), error = process.StandardError.ReadToEnd();
         process.WaitForExit();
         Assert.True(process.ExitCode == 0, error);
         return output;
