@@ -31,18 +31,14 @@ public class GammaEmissionTests
         Assert.Equal(integrated, pulse.IntegratedCumulativeAt(Delay + share * k * Theta) / Theta, 1e-13 * Math.Max(1, share * k));
     }
 
-    [SkippableTheory]
-    [InlineData(0.25)]
-    [InlineData(1.5)]
-    [InlineData(17)]
-    public void CumulativeAt_ManyTimes_IsThatOfPython(double k)
+    [SkippableFact]
+    public void CumulativeAt_ManyTimes_IsThatOfPython()
     {
-        double[] times = [.. Enumerable.Range(1, 60).Select(j => 0.05 * j * (k + 1))];
-        string list = string.Join(',', times.Select(t => t.ToString("R", CultureInfo.InvariantCulture)));
-        string printed = Python.Scipy(FormattableString.Invariant($"from scipy.stats import gamma\nfor t in [{list}]: print(repr(float(gamma.cdf(t, {k}))))"));
-        double[] expected = [.. printed.Split('\n', StringSplitOptions.RemoveEmptyEntries).Select(l => double.Parse(l, CultureInfo.InvariantCulture))];
-        Assert.Equal(times.Length, expected.Length);
-        for (int j = 0; j < times.Length; j++) Assert.Equal(expected[j], Pulse(k, 1).CumulativeAt(times[j]), 1e-12);
+        (double K, double T)[] places = [.. new[] { 0.25, 1.5, 17 }.SelectMany(k => Enumerable.Range(1, 60).Select(j => (k, 0.05 * j * (k + 1))))];
+        string list = string.Join(',', places.Select(p => FormattableString.Invariant($"({p.K:R},{p.T:R})")));
+        string[] printed = Python.Scipy($"from scipy.stats import gamma\nfor k, t in [{list}]: print(repr(float(gamma.cdf(t, k))))").Split('\n', StringSplitOptions.RemoveEmptyEntries);
+        Assert.Equal(places.Length, printed.Length);
+        for (int j = 0; j < places.Length; j++) Assert.Equal(double.Parse(printed[j], CultureInfo.InvariantCulture), Pulse(places[j].K, 1).CumulativeAt(places[j].T), 1e-12);
     }
 
     /// <summary>Integral, mean and support agree with the shares.</summary>
