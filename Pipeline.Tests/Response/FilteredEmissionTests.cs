@@ -11,6 +11,9 @@ public class FilteredEmissionTests
         { new ExponentialEmission { Delay = new(1e-4), Tail = new(1e-4) }, 5e-5 },
         { new ExponentialEmission { Delay = new(1e-4), Tail = new(5e-5) }, 5e-5 },
         { new ExponentialGaussianEmission { Delay = new(1.2e-4), Width = new(2e-5), Tail = new(4e-5) }, 5e-5 },
+        { new GammaEmission { Delay = new(1e-5), Shape = new(2.5), Scale = new(3e-5) }, 5e-5 },
+        { new GammaEmission { Delay = new(1e-5), Shape = new(0.6), Scale = new(7e-5) }, 5e-5 },
+        { new PulseRecord("pulse.csv", [1e-5, 4e-5, 6e-5, 1e-4, 3e-4], [0, 3, -0.1, 1, 0]).ToEmission(null), 5e-5 },
     };
 
     /// <summary>The filter obeys tau G' + G = F, G the filtered cumulative; and its mean comes later by tau.</summary>

@@ -7,7 +7,7 @@ static class Python
 {
     const string Program = "/usr/bin/python3";
     static readonly Lazy<bool> HasH5py = new(() => File.Exists(Program) && Exit("import h5py") == 0);
-    static readonly Lazy<bool> HasSciPy = new(() => File.Exists(Program) && Exit("import scipy") == 0);
+    static readonly Lazy<bool> HasSciPy = new(() => File.Exists(Program) && Exit("import scipy.stats") == 0);
 
     /// <summary>Runs a script with h5py as h5py, numpy as np and the file's path as path.</summary>
     public static string Write(string path, string script, string mode = "w", string options = "")
@@ -22,10 +22,14 @@ static class Python
 
     /// <summary>What a script of the repository prints that needs SciPy.</summary>
     /// <param name="script">Path below the repository.</param>
-    public static string Print(params string[] script)
+    public static string Print(params string[] script) =>
+        Scipy($"import runpy; runpy.run_path(r'{Path.Combine([Repository.Root, .. script])}', run_name='__main__')");
+
+    /// <summary>What a script prints that needs SciPy.</summary>
+    public static string Scipy(string script)
     {
         Skip.IfNot(HasSciPy.Value, "no Python with SciPy on this machine");
-        using Process process = Start($"import runpy; runpy.run_path(r'{Path.Combine([Repository.Root, .. script])}', run_name='__main__')");
+        using Process process = Start(script);
         Task<string> error = process.StandardError.ReadToEndAsync();
         string output = process.StandardOutput.ReadToEnd();
         process.WaitForExit();

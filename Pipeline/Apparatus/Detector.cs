@@ -25,8 +25,18 @@ public sealed record Detector
 {
     public required DetectorKind Kind { get; init; }
     /// <summary>Detected counts (or photo-electrons) for each photon that a molecule scatters: solid angle, optics, filter band and
-    /// quantum efficiency together; in (0, 1].</summary>
-    public required Measured Efficiency { get; init => field = Guard.Share(value); }
+    /// quantum efficiency together; in (0, 1]. The product of <see cref="EfficiencyFactors"/> where these are given.</summary>
+    public required Measured Efficiency { get => EfficiencyFactors.Count > 0 ? EfficiencyFactor.Product(EfficiencyFactors) : field; init => field = Guard.Share(value); }
+    /// <summary>What the efficiency is made of; empty where it is known as a whole.</summary>
+    public IReadOnlyList<EfficiencyFactor> EfficiencyFactors
+    {
+        get;
+        init
+        {
+            if (value.Count > 0) Guard.Share(EfficiencyFactor.Product(value));
+            field = value;
+        }
+    } = [];
     public DeadTimeKind DeadTimeKind { get; init; }
     /// <summary>s; 0 where none is known.</summary>
     public Measured DeadTime { get; init => field = Guard.NotNegative(value); }
@@ -46,4 +56,12 @@ public sealed record Detector
     public double ProbeMonitorNoise { get; init => field = Guard.NotNegative(value); }
     /// <summary>Relative noise of one reading of the ablation monitor: how far it is from the molecules and the flash it stands for.</summary>
     public double AblationMonitorNoise { get; init => field = Guard.NotNegative(value); }
+
+    /// <summary>With another value of one factor of the efficiency.</summary>
+    public Detector WithFactor(string name, Measured value) => this with { EfficiencyFactors = [.. EfficiencyFactors.Select(f => f.Name == name ? f with { Value = value } : f)] };
+
+    /// <summary>With the efficiency times a number; its uncertainty stays.</summary>
+    public Detector Scaled(double by) => EfficiencyFactors.Count > 0
+        ? this with { EfficiencyFactors = [EfficiencyFactors[0] with { Value = new(EfficiencyFactors[0].Value.Value * by, EfficiencyFactors[0].Value.Sigma) }, .. EfficiencyFactors.Skip(1)] }
+        : this with { Efficiency = new(Efficiency.Value * by, Efficiency.Sigma) };
 }

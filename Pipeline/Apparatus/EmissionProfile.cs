@@ -14,7 +14,8 @@ public abstract record EmissionProfile
     /// <summary>Mean emission time after the trigger, s.</summary>
     public abstract double MeanTime { get; }
 
-    /// <summary>Share of the molecules that left before <paramref name="time"/> (s after the trigger), in [0, 1].</summary>
+    /// <summary>Share of the molecules that left before <paramref name="time"/> (s after the trigger), in [0, 1]; that of a measured pulse may
+    /// leave the range by its noise, at most by 0.02.</summary>
     public abstract double CumulativeAt(double time);
 
     /// <summary>Integral of <see cref="CumulativeAt"/> from minus infinity to <paramref name="time"/>, s.</summary>
@@ -22,4 +23,7 @@ public abstract record EmissionProfile
 
     /// <summary>Times (s after the trigger) before and after which less than 1e-15 of the molecules leave.</summary>
     public abstract (double Low, double High) Support { get; }
+
+    /// <summary>What a reader of the results should know of the pulse; null: nothing.</summary>
+    public virtual string? Remark => null;
 }

@@ -5,7 +5,8 @@ namespace Pipeline.Apparatus;
 /// <summary>An emission pulse as a detector with a one-pole filter sees it. Flight and transit come between both, but convolutions may be
 /// taken in any order, so the filter can be folded into the pulse.</summary>
 /// <remarks>The convolution of two exponentials is (T f_T - tau f_tau)/(T - tau), with or without a Gaussian; so every filtered pulse is a
-/// weighted sum of two unfiltered ones, exactly.</remarks>
+/// weighted sum of two unfiltered ones, exactly. A gamma pulse has no such sum where the filter is faster than its fall: it is tabulated, with
+/// errors below 1e-6 of the molecules for shapes from 1 up; a measured pulse is filtered exactly, piece by piece.</remarks>
 public static class FilteredEmission
 {
     /// <param name="pulse">As emitted.</param>
@@ -20,6 +21,8 @@ public static class FilteredEmission
             GaussianEmission g => new ExponentialGaussianEmission { Delay = g.Delay, Width = g.Width, Tail = tau },
             ExponentialEmission x => Twice(x with { Tail = Apart(x.Tail, timeConstant) }, x with { Tail = tau }, Apart(x.Tail, timeConstant).Value, timeConstant),
             ExponentialGaussianEmission e => Twice(e with { Tail = Apart(e.Tail, timeConstant) }, e with { Tail = tau }, Apart(e.Tail, timeConstant).Value, timeConstant),
+            GammaEmission m => new FilteredPulse(PulseShape.Of(m, m.Places()), timeConstant, m.Name),
+            TemplateEmission t => new FilteredPulse(t.AtSource(), timeConstant, t.Name),
             _ => throw new ArgumentOutOfRangeException(nameof(pulse), pulse.Name, "has no filtered form"),
         };
     }

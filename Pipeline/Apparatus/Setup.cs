@@ -1,3 +1,4 @@
+using System.Globalization;
 using Pipeline.Quantities;
 
 namespace Pipeline.Apparatus;
@@ -18,10 +19,23 @@ public sealed record Setup
     public required Probe Probe { get; init; }
     public required Detector Detector { get; init; }
     public required EmissionProfile Emission { get; init; }
+    /// <summary>Share of all molecules that are in the probed level, in (0, 1]: numbers are then of all molecules; null: they are of molecules in
+    /// the probed level.</summary>
+    public Measured? LevelShare { get; init => field = value is { } share ? Guard.Share(share) : null; }
+    /// <summary>Counts for each photon that molecules would scatter if all were in the probed level.</summary>
+    public double CountsPerPhoton => Detector.Efficiency.Value * (LevelShare?.Value ?? 1);
     /// <summary>Flight by condition name.</summary>
     public required IReadOnlyDictionary<string, FlightKind> Conditions { get; init; }
     /// <summary>Capture velocity of the user's trap, m/s.</summary>
     public required double CaptureSpeed { get; init => field = Guard.Positive(value); }
+
+    /// <summary>What a reader of the results should know.</summary>
+    public IReadOnlyList<string> Remarks =>
+    [
+        LevelShare is { } share ? string.Create(CultureInfo.InvariantCulture, $"numbers are of all molecules, of which a share of {share} is taken to be in the probed level")
+            : "numbers are of molecules in the probed level; what share of all molecules that is, is not stated",
+        .. Emission.Remark is { } remark ? [remark] : Array.Empty<string>(),
+    ];
 
     /// <summary>The flight map of a condition.</summary>
     /// <exception cref="DataFaultException">The condition is unknown, or needs a decelerator that is not described.</exception>

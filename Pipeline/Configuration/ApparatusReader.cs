@@ -8,8 +8,10 @@ static class ApparatusReader
 {
     /// <param name="root">The file.</param>
     /// <param name="species">Reads species/NAME.toml.</param>
+    /// <param name="file">Path of the file that a key of a table names.</param>
     /// <returns>The setup with its usual detector, and other detectors and probes by name.</returns>
-    public static (Setup Setup, IReadOnlyDictionary<string, Detector> Detectors, IReadOnlyDictionary<string, Probe> Probes) Read(TomlTable root, Func<TomlTable, string, Species> species)
+    public static (Setup Setup, IReadOnlyDictionary<string, Detector> Detectors, IReadOnlyDictionary<string, Probe> Probes) Read(
+        TomlTable root, Func<TomlTable, string, Species> species, Func<TomlTable, string, string> file)
     {
         Species molecule = species(root, root.Text("species"));
         Decelerator? decelerator = root.OptionalTable("decelerator") is { } section ? ReadDecelerator(section) : null;
@@ -20,7 +22,7 @@ static class ApparatusReader
         if (root.OptionalTable("detectors") is { } named) foreach (string name in named.Keys.ToArray()) others[name] = ReadDetector(named.Table(name));
         var probes = new Dictionary<string, Probe>(StringComparer.Ordinal);
         if (root.OptionalTable("probes") is { } lasers) foreach (string name in lasers.Keys.ToArray()) probes[name] = ReadProbe(lasers.Table(name), molecule);
-        EmissionProfile emission = ReadEmission(root.Table("emission"));
+        (EmissionProfile emission, Measured? levelShare) = EmissionReader.Read(root.Table("emission"), file);
         var conditions = ReadConditions(root.Table("conditions"), decelerator);
         TomlTable trap = root.Table("trap");
         double capture = trap.Quantity("capture_velocity", Dimension.Speed).Value;
@@ -28,7 +30,7 @@ static class ApparatusReader
         root.RefuseUnknown();
         return (trap.Build(() => new Setup
         {
-            Species = molecule, Beamline = beamline, Probe = probe, Detector = detector, Emission = emission, Conditions = conditions, CaptureSpeed = capture,
+            Species = molecule, Beamline = beamline, Probe = probe, Detector = detector, Emission = emission, LevelShare = levelShare, Conditions = conditions, CaptureSpeed = capture,
         }, new Dictionary<string, string>(StringComparer.Ordinal) { ["CaptureSpeed"] = "capture_velocity" }), others, probes);
     }
 
@@ -55,24 +57,6 @@ static class ApparatusReader
         return t.Build(() => new Decelerator { SourceToEntrance = entrance, Length = length, Stages = stages, EnergyPerStage = energy });
     }
 
-    static EmissionProfile ReadEmission(TomlTable t)
-    {
-        string profile = t.Choice("profile", ["instant", "gaussian", "exponential", "exponential-gaussian", "unknown"]);
-        Measured delay = t.OptionalQuantity("delay", Dimension.Time) ?? default;
-        Measured width = profile is "gaussian" or "exponential-gaussian" ? t.Quantity("width", Dimension.Time) : default;
-        Measured tail = profile is "exponential" or "exponential-gaussian" ? t.Quantity("tail", Dimension.Time) : default;
-        Measured longest = profile == "unknown" ? t.Quantity("longest", Dimension.Time) : default;
-        t.RefuseUnknown();
-        return t.Build<EmissionProfile>(() => profile switch
-        {
-            "unknown" => new UnknownEmission { Delay = delay, Longest = longest },
-            "instant" => new InstantEmission { Delay = delay },
-            "gaussian" => new GaussianEmission { Delay = delay, Width = width },
-            "exponential" => new ExponentialEmission { Delay = delay, Tail = tail },
-            _ => new ExponentialGaussianEmission { Delay = delay, Width = width, Tail = tail },
-        });
-    }
-
     static Probe ReadProbe(TomlTable t, Species species)
     {
         ProbeShape shape = t.Choice("shape", ("top-hat", ProbeShape.TopHat), ("gaussian", ProbeShape.Gaussian));
@@ -95,7 +79,7 @@ static class ApparatusReader
     static Detector ReadDetector(TomlTable t)
     {
         DetectorKind kind = t.Choice("kind", ("counting", DetectorKind.Counting), ("analog", DetectorKind.Analog));
-        Measured efficiency = t.Quantity("efficiency", Dimension.Fraction);
+        (Measured efficiency, EfficiencyFactor[] factors) = EfficiencyReader.Read(t);
         Measured deadTime = kind == DetectorKind.Counting ? t.OptionalQuantity("dead_time", Dimension.Time) ?? default : default;
         DeadTimeKind paralysable = kind == DetectorKind.Counting && t.Has("dead_time_kind")
             ? t.Choice("dead_time_kind", ("non-paralysable", DeadTimeKind.NonParalysable), ("paralysable", DeadTimeKind.Paralysable)) : DeadTimeKind.NonParalysable;
@@ -109,7 +93,7 @@ static class ApparatusReader
         t.RefuseUnknown();
         return t.Build(() => new Detector
         {
-            Kind = kind, Efficiency = efficiency, DeadTime = deadTime, DeadTimeKind = paralysable, VoltSecondPerElectron = gain, TimeConstant = filter, CouplingTime = coupling, ExcessNoise = excess, ProbeMonitorZero = probeZero,
+            Kind = kind, Efficiency = efficiency, EfficiencyFactors = factors, DeadTime = deadTime, DeadTimeKind = paralysable, VoltSecondPerElectron = gain, TimeConstant = filter, CouplingTime = coupling, ExcessNoise = excess, ProbeMonitorZero = probeZero,
             AblationMonitorZero = ablationZero, ProbeMonitorNoise = probeNoise.Value, AblationMonitorNoise = ablationNoise.Value,
         });
     }

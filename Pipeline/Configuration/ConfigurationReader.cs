@@ -36,7 +36,7 @@ public static class ConfigurationReader
         }
         var files = new SortedSet<string>(StringComparer.Ordinal) { Apparatus, Night };
         var (shots, molecules, broken) = ReadLayouts(folder, files, faults);
-        var apparatus = Try(faults, () => Tuple.Create(ApparatusReader.Read(TomlFile.Read(folder, Apparatus), (root, name) => SpeciesOf(folder, root, name, files))));
+        var apparatus = Try(faults, () => Tuple.Create(ApparatusReader.Read(TomlFile.Read(folder, Apparatus), (root, name) => SpeciesOf(folder, root, name, files), (table, key) => FileOf(folder, table, key, files))));
         Apparatus.Setup? setup = apparatus?.Item1.Setup;
         var choices = new NightChoices([.. BackgroundModels.All.Select(b => b.Name)], SpectrumEstimatorNames.All, [.. Analysis.RunAnalysis.Modes],
             [.. shots.Keys, .. broken], [.. molecules.Keys, .. broken], setup?.Conditions.Keys.ToArray() ?? [], apparatus?.Item1.Detectors.Keys.ToArray() ?? [], apparatus?.Item1.Probes.Keys.ToArray() ?? []);
@@ -78,6 +78,17 @@ public static class ConfigurationReader
             throw root.Refuse("species", $"\"{name}\"", "a file of that name in species/", known.Length > 0 ? NearestName.Remedy(name, known) : "write one");
         files.Add(relative);
         return SpeciesReader.Read(TomlFile.Read(folder, relative));
+    }
+
+    /// <summary>Path of a data file in the configuration folder, which then belongs to the configuration.</summary>
+    static string FileOf(string folder, TomlTable table, string key, SortedSet<string> files)
+    {
+        string name = table.Text(key), path = Path.Combine(folder, name);
+        if (name.Length == 0 || Path.IsPathRooted(name) || name.Split('/', '\\').Contains(".."))
+            throw table.Refuse(key, $"\"{name}\"", "a path below the configuration folder", "copy the file there");
+        if (!File.Exists(path)) throw table.Refuse(key, $"\"{name}\", which is not there", "a file in the configuration folder", "copy it there, or correct the name");
+        files.Add(name.Replace('\\', '/'));
+        return path;
     }
 
     static T? Try<T>(List<Fault> faults, Func<T> read) where T : class

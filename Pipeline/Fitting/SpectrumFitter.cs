@@ -47,7 +47,7 @@ public static class SpectrumFitter
             Below = BelowCaptureFinder.Find(window, responses.Main, setup, settings, yieldScatter, outcomes[0]),
             YieldScatter = yieldScatter,
             YieldFreedom = freedom,
-            Remarks = [.. signal.Remarks, .. refused, .. UnseenRemarks(condition, window, responses.Main), .. BlockRemarks(run, condition), .. mode.Scanned == Scanned.DetuningAndTime ? [MapBias] : Array.Empty<string>()],
+            Remarks = [.. signal.Remarks, .. setup.Remarks, .. refused, .. UnseenRemarks(condition, window, responses.Main), .. BlockRemarks(run, condition), .. mode.Scanned == Scanned.DetuningAndTime ? [MapBias] : Array.Empty<string>()],
         };
     }
 

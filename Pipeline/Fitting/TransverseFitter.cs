@@ -26,7 +26,7 @@ public static class TransverseFitter
         var line = new TransverseLine(setup, signal.Axis.Points, speed);
         double[] best = line.Find(window, Starts(window, signal.Axis.Points));
         double[][] drawn = replicas.Map(w => line.Find(w, [best]));
-        (string Name, double[] Up, double[] Down)[] shifted = [.. Nuisances.Of(setup).Where(n => n.Name is not ("frequency zero" or "efficiency")).Select(n =>
+        (string Name, double[] Up, double[] Down)[] shifted = [.. Nuisances.Of(setup).Where(n => n.Name != "frequency zero" && !n.ScalesOnly).Select(n =>
             (n.Name, new TransverseLine(n.Shift(setup, 1), signal.Axis.Points, speed).Find(window, [best]), new TransverseLine(n.Shift(setup, -1), signal.Axis.Points, speed).Find(window, [best])))];
         Quantity Of(Func<double[], double> of) => net < ClearSignal * error ? Quantity.NotDetermined("the net signal is less than five of its standard errors")
             : Quantity.Of(of(best), Math.Sqrt(Replicas.Variance([.. drawn.Select(of)])), [.. shifted.Select(s => new BudgetLine(s.Name, 0.5 * (of(s.Up) - of(s.Down))))]);

@@ -19,9 +19,9 @@ public sealed class DetectionYield
         Spread = DetuningSpread(setup.Probe.DetuningSpread.Value);
     }
 
-    /// <summary>Mean counts for each molecule of this speed.</summary>
+    /// <summary>Mean counts for each molecule of this speed, in whatever level it is.</summary>
     /// <param name="speed">m/s, positive.</param>
-    public double CountsAt(double speed) => _setup.Detector.Efficiency.Value * PhotonsAt(speed);
+    public double CountsAt(double speed) => _setup.CountsPerPhoton * PhotonsAt(speed);
 
     /// <summary>Mean photons that a molecule of this speed scatters.</summary>
     public double PhotonsAt(double speed)

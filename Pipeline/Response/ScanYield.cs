@@ -48,7 +48,7 @@ sealed class ScanYield
     public double[] Counts(double from, double to)
     {
         var counts = new double[_lasers.Length];
-        double efficiency = _setup.Detector.Efficiency.Value, lines = _setup.Species.Lines.Sum(l => l.Weight);
+        double efficiency = _setup.CountsPerPhoton, lines = _setup.Species.Lines.Sum(l => l.Weight);
         for (int k = 0; k < PerCell; k++)
         {
             double speed = from + (k + 0.5) / PerCell * (to - from), doppler = speed * Math.Cos(_setup.Probe.Angle.Value) / _setup.Species.Wavelength.Value;
