@@ -13,17 +13,25 @@ sealed class EstimatorRun
     readonly Refitted[] _replicas;
     readonly (string Name, Refitted? Up, Refitted? Down)[] _shifted;
 
-    public EstimatorRun(ISpectrumEstimator estimator, FitWindow window, ShiftedResponses responses, Replicas replicas, VelocityGrid grid)
+    /// <param name="estimator">The estimator.</param>
+    /// <param name="window">The data.</param>
+    /// <param name="responses">The instrument.</param>
+    /// <param name="replicas">The data drawn anew.</param>
+    /// <param name="grid">Velocity cells.</param>
+    /// <param name="moved">By name, the data where a fact that is no part of the response is moved by plus and minus one standard deviation.</param>
+    public EstimatorRun(ISpectrumEstimator estimator, FitWindow window, ShiftedResponses responses, Replicas replicas, VelocityGrid grid,
+        IReadOnlyList<(string Name, FitWindow Up, FitWindow Down)>? moved = null)
     {
         (_estimator, _window, _grid) = (estimator, window, grid);
         _fit = estimator.Fit(window, responses.Main);
         _replicas = replicas.Map(w => _fit.Refit(w, responses.Main));
-        _shifted = new (string, Refitted?, Refitted?)[responses.Pairs.Count];
-        Parallel.For(0, _shifted.Length, k =>
+        var shifted = new (string, Refitted?, Refitted?)[responses.Pairs.Count];
+        Parallel.For(0, shifted.Length, k =>
         {
             (string name, ResponseMatrix? up, ResponseMatrix? down) = responses.Pairs[k];
-            _shifted[k] = (name, up is null ? null : _fit.Refit(window, up), down is null ? null : _fit.Refit(window, down));
+            shifted[k] = (name, up is null ? null : _fit.Refit(window, up), down is null ? null : _fit.Refit(window, down));
         });
+        _shifted = [.. shifted, .. (moved ?? []).Select(m => (m.Name, (Refitted?)_fit.Refit(m.Up, responses.Main), (Refitted?)_fit.Refit(m.Down, responses.Main)))];
     }
 
     public string Name => _estimator.Name;
@@ -39,7 +47,11 @@ sealed class EstimatorRun
         return Fitting.Quantity.Of(value, statistical, [.. _shifted.Select(s => new BudgetLine(s.Name, Shift(s.Up, s.Down, of, value)))]);
     }
 
-    public VelocitySpectrum ToSpectrum(NetSignal signal, string? weak)
+    /// <param name="signal">Where the fit is to be folded back to.</param>
+    /// <param name="weak">Why mean and spread are not to be quoted; null where they are.</param>
+    /// <param name="part">The window of this signal where several were fitted together; null: all of the fit.</param>
+    /// <param name="from">First bin of that window in the fit.</param>
+    public VelocitySpectrum ToSpectrum(NetSignal signal, string? weak, FitWindow? part = null, int from = 0)
     {
         Quantity Moment(Func<SpectrumMoments, double> of) => (_fit.Refusal ?? weak) is { } because
             ? Fitting.Quantity.NotDetermined(because) : Quantity(r => of(r.Moments));
@@ -51,7 +63,7 @@ sealed class EstimatorRun
             Molecules = _fit.Molecules,
             Statistical = [.. Enumerable.Range(0, _grid.Cells).Select(c => Math.Sqrt(Replicas.Variance([.. _replicas.Select(r => r.Molecules[c])])))],
             Systematic = [.. Enumerable.Range(0, _grid.Cells).Select(c => Math.Sqrt(_shifted.Sum(s => Square(Shift(s.Up, s.Down, r => r.Molecules[c], _fit.Molecules[c])))))],
-            Refolded = Refolded(signal),
+            Refolded = Refolded(signal, part ?? _window, from),
             Resolution = _fit.Resolution,
             Deviance = _fit.Deviance,
             DegreesOfFreedom = _fit.DegreesOfFreedom,
@@ -64,11 +76,11 @@ sealed class EstimatorRun
         };
     }
 
-    double[] Refolded(NetSignal signal)
+    double[] Refolded(NetSignal signal, FitWindow window, int from)
     {
         double[] refolded = [.. Enumerable.Repeat(double.NaN, signal.Axis.Bins)];
-        for (int i = 0; i < _window.Count; i++)
-            refolded[_window.First + i] = (_fit.Means[i] - _window.Background[i]) / _window.Exposure[i];
+        for (int i = 0; i < window.Count; i++)
+            refolded[window.First + i] = (_fit.Means[from + i] - window.Background[i]) / window.Exposure[i];
         return refolded;
     }
 

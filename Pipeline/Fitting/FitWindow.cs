@@ -24,6 +24,44 @@ sealed class FitWindow
         Causes = [.. signal.Causes.Select(c => Part(c.Vector)).Where(v => v.Any(x => x != 0))];
     }
 
+    FitWindow(int first, double[] total, double[] exposure, double[] background, double[] extraVariance, double[]? totalVariance, double[][] causes)
+    {
+        (First, Count, Total, Exposure, Background, ExtraVariance, TotalVariance, Causes) =
+            (first, total.Length, total, exposure, background, extraVariance, totalVariance, causes);
+    }
+
+    /// <summary>Several windows as one: bins one after the other, each cause in its own part.</summary>
+    /// <param name="parts">Windows.</param>
+    /// <param name="shared">Further causes over all bins.</param>
+    public static FitWindow Stack(IReadOnlyList<FitWindow> parts, IEnumerable<double[]> shared)
+    {
+        int bins = parts.Sum(p => p.Count);
+        double[] All(Func<FitWindow, double[]> of) => [.. parts.SelectMany(of)];
+        var causes = new List<double[]>();
+        int offset = 0;
+        foreach (FitWindow part in parts)
+        {
+            int from = offset;
+            causes.AddRange(part.Causes.Select(c => Placed(c, from, bins)));
+            offset += part.Count;
+        }
+        bool measured = parts.Any(p => p.TotalVariance is not null);
+        return new FitWindow(0, All(p => p.Total), All(p => p.Exposure), All(p => p.Background), All(p => p.ExtraVariance),
+            measured ? All(p => p.TotalVariance ?? [.. p.Total.Select(t => Math.Max(t, 1))]) : null, [.. causes, .. shared]);
+    }
+
+    /// <summary>A vector over some bins as one over all of them.</summary>
+    public static double[] Placed(double[] part, int from, int bins)
+    {
+        var whole = new double[bins];
+        part.CopyTo(whole, from);
+        return whole;
+    }
+
+    /// <summary>The same window with so much more in it.</summary>
+    public FitWindow Plus(double[] more) =>
+        new(First, [.. Total.Zip(more, (t, m) => t + m)], Exposure, Background, ExtraVariance, TotalVariance, Causes);
+
     /// <summary>First bin of the axis.</summary>
     public int First { get; }
     public int Count { get; }

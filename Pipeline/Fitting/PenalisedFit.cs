@@ -33,6 +33,9 @@ sealed class PenalisedFit
     /// <summary>Deviance of the data and of the priors of the causes, without the penalty.</summary>
     public double Deviance { get; private set; }
 
+    /// <summary>What is minimised, at the solution.</summary>
+    public double Objective => ObjectiveAt(X);
+
     /// <summary>A flat spectrum that holds the net counts, as a start.</summary>
     public void StartFlat()
     {

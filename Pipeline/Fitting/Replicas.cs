@@ -23,6 +23,12 @@ sealed class Replicas
         });
     }
 
+    Replicas(FitWindow[] windows) => Windows = windows;
+
+    /// <summary>Replicas of several signals that are fitted together.</summary>
+    public static Replicas Stack(IReadOnlyList<Replicas> parts, IReadOnlyList<double[]> shared) =>
+        new([.. Enumerable.Range(0, parts[0].Windows.Length).Select(k => FitWindow.Stack([.. parts.Select(p => p.Windows[k])], shared))]);
+
     /// <summary>[replicas].</summary>
     public FitWindow[] Windows { get; }
 

@@ -47,7 +47,7 @@ public static class SpectrumFitter
             Below = BelowCaptureFinder.Find(window, responses.Main, setup, settings, yieldScatter, outcomes[0]),
             YieldScatter = yieldScatter,
             YieldFreedom = freedom,
-            Remarks = [.. signal.Remarks, .. setup.Remarks, .. refused, .. UnseenRemarks(condition, window, responses.Main), .. BlockRemarks(run, condition), .. mode.Scanned == Scanned.DetuningAndTime ? [MapBias] : Array.Empty<string>()],
+            Remarks = [.. signal.Remarks, .. setup.Remarks, .. refused, .. UnseenRemarks(condition, window, responses.Main), .. BlockRemarks(run, condition)],
         };
     }
 
@@ -60,10 +60,7 @@ public static class SpectrumFitter
         Remarks = signal.Remarks,
     };
 
-    /// <summary>Measured on ensembles, not understood: see the developers' guide.</summary>
-    const string MapBias = "numbers from maps came out half of their statistical error too low in made-up runs; velocities did not";
-
-    static string? Weakness(FitWindow window)
+    internal static string? Weakness(FitWindow window)
     {
         double net = window.Total.Sum() - window.Background.Sum();
         double error = Math.Sqrt(window.Total.Select((t, i) => window.Variance(i, t)).Sum());
@@ -98,17 +95,23 @@ public static class SpectrumFitter
 sealed class ShiftedResponses
 {
     public ShiftedResponses(Setup setup, Func<Setup, ResponseMatrix> build)
+        : this(build(setup), [.. Nuisances.Of(setup).Select(n => (n.Name, (Func<double, ResponseMatrix>)(k => build(n.Shift(setup, k)))))])
     {
-        Main = build(setup);
-        IReadOnlyList<Nuisance> nuisances = Nuisances.Of(setup);
-        var pairs = new (string, ResponseMatrix?, ResponseMatrix?)[nuisances.Count];
-        Parallel.For(0, pairs.Length, k => pairs[k] = (nuisances[k].Name, Try(nuisances[k], 1), Try(nuisances[k], -1)));
+    }
+
+    /// <param name="main">The response.</param>
+    /// <param name="shifts">By name, the response where a fact is moved by k standard deviations.</param>
+    public ShiftedResponses(ResponseMatrix main, IReadOnlyList<(string Name, Func<double, ResponseMatrix> At)> shifts)
+    {
+        Main = main;
+        var pairs = new (string, ResponseMatrix?, ResponseMatrix?)[shifts.Count];
+        Parallel.For(0, pairs.Length, k => pairs[k] = (shifts[k].Name, Try(shifts[k].At, 1), Try(shifts[k].At, -1)));
         Pairs = [.. pairs.Where(p => !(p.Item2?.SameAs(Main) ?? false) || !(p.Item3?.SameAs(Main) ?? false))];
 
         // a fact that is uncertain by more than itself cannot be moved that far down: the other side then stands for both
-        ResponseMatrix? Try(Nuisance nuisance, double k)
+        static ResponseMatrix? Try(Func<double, ResponseMatrix> at, double k)
         {
-            try { return build(nuisance.Shift(setup, k)); }
+            try { return at(k); }
             catch (ArgumentOutOfRangeException) { return null; }
         }
     }
