@@ -36,6 +36,22 @@ public static class RunAnalysis
             : SpectrumFitter.Fit(run, condition, setup, background, ResponseModes.Named(mode), settings.Fit))], setup);
     }
 
+    /// <summary>Name of the mode of runs that are fitted together.</summary>
+    public const string Joint = "joint";
+
+    /// <summary>One spectrum from several runs.</summary>
+    public static IReadOnlyList<SpectrumOutcome> FitTogether(IReadOnlyList<JointMember> members, AnalysisSettings settings, double yieldMayDiffer)
+    {
+        foreach (JointMember member in members)
+        {
+            if (member.Mode == TransverseFitter.Mode)
+                throw new DataFaultException(member.Name, "a scan across the beam in a joint fit", "runs that tell velocities", "name it in zero_from of the Doppler scans instead");
+            if (!member.Run.Conditions.Contains(member.Condition, StringComparer.Ordinal))
+                throw new DataFaultException(member.Name, $"no kept signal shots of condition \"{member.Condition}\"", $"one of {string.Join(", ", member.Run.Conditions)}", "correct the condition of [[joint]] in night.toml");
+        }
+        return JointFitter.Fit(members, BackgroundModels.Named(settings.Background), settings.Fit, yieldMayDiffer);
+    }
+
     /// <summary>Folded predictions, and the verdict on the run.</summary>
     public static (IReadOnlyList<ConditionOutcome> Conditions, Verdict Verdict) Compare(
         IReadOnlyList<SpectrumOutcome> fits, IReadOnlyDictionary<string, ConditionPrediction> predictions, Setup setup, AnalysisSettings settings)

@@ -75,4 +75,8 @@ public sealed record FailedRun(string Name, Fault Fault);
 /// <param name="Runs">In order of name.</param>
 /// <param name="Failed">In order of name.</param>
 /// <param name="NotRuns">Files that no rule calls a run or a prediction.</param>
-public sealed record NightOutcome(string Day, IReadOnlyList<RunOutcome> Runs, IReadOnlyList<FailedRun> Failed, IReadOnlyList<string> NotRuns);
+public sealed record NightOutcome(string Day, IReadOnlyList<RunOutcome> Runs, IReadOnlyList<FailedRun> Failed, IReadOnlyList<string> NotRuns)
+{
+    /// <summary>Fits of several runs together, in the order of their rules; they are compared with nothing and have no verdict.</summary>
+    public IReadOnlyList<RunOutcome> Joints { get; init; } = [];
+}

@@ -17,6 +17,8 @@ public sealed record Probe
     public ProbeShape Shape { get; init; } = ProbeShape.TopHat;
     /// <summary>Full width of a top hat, or 1/e^2 radius of a Gaussian, m.</summary>
     public required Measured Width { get; init => field = Guard.Positive(value); }
+    /// <summary>Emission point to the middle of this probe, m; null: that of the beam line.</summary>
+    public Measured? SourceToProbe { get; init => field = value is { } d ? Guard.Positive(d) : null; }
     /// <summary>Angle between laser propagation and molecular velocity, rad.</summary>
     public Measured Angle { get; init; } = new(Math.PI / 2);
     /// <summary>Peak saturation parameter; null where <see cref="ScatteringRate"/> is given instead.</summary>

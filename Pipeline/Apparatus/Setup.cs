@@ -58,6 +58,8 @@ public sealed record Setup
             ?? throw new DataFaultException($"condition \"{condition}\"", "flight \"decelerator\" without a [decelerator] table",
                 "entrance, length, stages and energy per stage", "describe the decelerator in apparatus.toml");
         double exitToProbe = Beamline.SourceToProbe.Value - section.SourceToEntrance.Value - section.Length.Value;
+        if (exitToProbe < 0)
+            throw new DataFaultException($"condition \"{condition}\"", $"a probe at {Beamline.SourceToProbe.Value:G4} m, before the end of the decelerator", "a probe behind it, or free flight", "compare this probe's runs in conditions with free flight only");
         return new DeceleratedFlight(section.SourceToEntrance.Value, section.Length.Value, exitToProbe, section.Stages,
             section.EnergyPerStage.Value, Species.Mass.Value);
     }

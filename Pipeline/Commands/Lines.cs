@@ -39,6 +39,10 @@ static class Lines
             Say($"  {run.Name,-18} {c.Name,-6} {Numbers.WithTotal(c.Fit.Number),-16} {Numbers.WithTotal(c.Fit.Mean),-15} {BelowShort(c.Fit.Below),-16} {Word(run.Verdict.Judgement)}");
     }
 
+    /// <summary>A row for runs that were fitted together.</summary>
+    public static void Joint(RunOutcome joint) =>
+        Say($"  {joint.Name,-18} {"joint",-6} {Numbers.WithTotal(joint.Conditions[0].Fit.Number),-16} {Numbers.WithTotal(joint.Conditions[0].Fit.Mean),-15} {BelowShort(joint.Conditions[0].Fit.Below),-16} of {joint.Conditions.Count} runs");
+
     public static string Head => $"  {"run",-18} {"cond.",-6} {"molecules/shot",-16} {"mean m/s",-15} {"below capture",-16} verdict";
 
     public static string Word(Judgement judgement) => judgement switch

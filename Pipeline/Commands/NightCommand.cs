@@ -54,6 +54,7 @@ static class NightCommand
         Console.WriteLine();
         Console.WriteLine(Lines.Head);
         foreach (RunOutcome run in night.Runs) Lines.Row(run);
+        foreach (RunOutcome joint in night.Joints) Lines.Joint(joint);
         foreach (FailedRun failed in night.Failed) Console.WriteLine($"  {failed.Name,-18} not analysed. {failed.Fault}");
         if (night.NotRuns.Count > 0) Console.WriteLine($"  no runs by the rules of night.toml: {string.Join(", ", night.NotRuns)}");
         int Count(Judgement j) => night.Runs.Count(r => r.Verdict.Judgement == j);

@@ -21,7 +21,7 @@ static class ApparatusReader
         var others = new Dictionary<string, Detector>(StringComparer.Ordinal);
         if (root.OptionalTable("detectors") is { } named) foreach (string name in named.Keys.ToArray()) others[name] = ReadDetector(named.Table(name));
         var probes = new Dictionary<string, Probe>(StringComparer.Ordinal);
-        if (root.OptionalTable("probes") is { } lasers) foreach (string name in lasers.Keys.ToArray()) probes[name] = ReadProbe(lasers.Table(name), molecule);
+        if (root.OptionalTable("probes") is { } lasers) foreach (string name in lasers.Keys.ToArray()) probes[name] = ReadOtherProbe(lasers.Table(name), molecule);
         (EmissionProfile emission, Measured? levelShare) = EmissionReader.Read(root.Table("emission"), file);
         var conditions = ReadConditions(root.Table("conditions"), decelerator);
         TomlTable trap = root.Table("trap");
@@ -55,6 +55,13 @@ static class ApparatusReader
         Measured energy = t.Quantity("energy_per_stage", Dimension.Energy);
         t.RefuseUnknown();
         return t.Build(() => new Decelerator { SourceToEntrance = entrance, Length = length, Stages = stages, EnergyPerStage = energy });
+    }
+
+    /// <summary>A probe beside the usual one may stand elsewhere on the beam line.</summary>
+    static Probe ReadOtherProbe(TomlTable t, Species species)
+    {
+        Measured? distance = t.OptionalQuantity("source_to_probe", Dimension.Length);
+        return t.Build(() => ReadProbe(t, species) with { SourceToProbe = distance });
     }
 
     static Probe ReadProbe(TomlTable t, Species species)

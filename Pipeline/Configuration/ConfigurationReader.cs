@@ -45,7 +45,7 @@ public static class ConfigurationReader
         if (night is null || faults.Count > 0) return null;
         return new LabConfiguration
         {
-            Setup = setup, Detectors = apparatus!.Item1.Detectors, Probes = apparatus.Item1.Probes, Analysis = night.Item1.Settings, Runs = night.Item1.Runs, Predictions = night.Item1.Predictions, ShotLayouts = shots,
+            Setup = setup, Detectors = apparatus!.Item1.Detectors, Probes = apparatus.Item1.Probes, Analysis = night.Item1.Settings, Runs = night.Item1.Runs, Predictions = night.Item1.Predictions, Joints = night.Item1.Joints, ShotLayouts = shots,
             MoleculeLayouts = molecules, Files = [.. files], Digest = DigestOf(folder, files),
         };
     }

@@ -40,6 +40,13 @@ public enum Normalisation
 public sealed record PredictionRule(
     string Runs, string Condition, string File, string Layout, MoleculeWeighting Weighting, Normalisation Normalisation);
 
+/// <summary>Runs that share a beam, to be fitted together.</summary>
+/// <param name="Name">Name of the result, beside those of the runs.</param>
+/// <param name="Runs">Patterns over run names; numbers are those of the first run by the first pattern.</param>
+/// <param name="Condition">Condition whose beam is shared.</param>
+/// <param name="YieldMayDiffer">Relative standard deviation of the source's yield between the runs.</param>
+public sealed record JointRule(string Name, IReadOnlyList<string> Runs, string Condition, double YieldMayDiffer);
+
 /// <summary>All that the configuration folder says, validated.</summary>
 public sealed record LabConfiguration
 {
@@ -52,6 +59,8 @@ public sealed record LabConfiguration
     /// <summary>First match wins among the rules without a name.</summary>
     public required IReadOnlyList<RunRule> Runs { get; init; }
     public required IReadOnlyList<PredictionRule> Predictions { get; init; }
+    /// <summary>Runs that are fitted together as well.</summary>
+    public IReadOnlyList<JointRule> Joints { get; init; } = [];
     public required IReadOnlyDictionary<string, ShotFileLayout> ShotLayouts { get; init; }
     public required IReadOnlyDictionary<string, MoleculeFileLayout> MoleculeLayouts { get; init; }
     /// <summary>SHA-256 over names and bytes of every file that was read, hexadecimal.</summary>
@@ -63,6 +72,8 @@ public sealed record LabConfiguration
     public Setup SetupFor(RunRule rule)
     {
         Setup setup = rule.Detector is { } detector ? Setup with { Detector = Detectors[detector] } : Setup;
-        return rule.Probe is { } probe ? setup with { Probe = Probes[probe] } : setup;
+        if (rule.Probe is not { } name) return setup;
+        Probe probe = Probes[name];
+        return setup with { Probe = probe, Beamline = probe.SourceToProbe is { } distance ? setup.Beamline with { SourceToProbe = distance } : setup.Beamline };
     }
 }

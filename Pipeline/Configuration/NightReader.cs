@@ -24,14 +24,15 @@ sealed record NightChoices(
 /// <summary>night.toml.</summary>
 static class NightReader
 {
-    public static (AnalysisSettings Settings, IReadOnlyList<RunRule> Runs, IReadOnlyList<PredictionRule> Predictions) Read(TomlTable root, NightChoices choices)
+    public static (AnalysisSettings Settings, IReadOnlyList<RunRule> Runs, IReadOnlyList<PredictionRule> Predictions, IReadOnlyList<JointRule> Joints) Read(TomlTable root, NightChoices choices)
     {
         AnalysisSettings settings = ReadSettings(root.Table("analysis"), root.OptionalTable("checks"), root.OptionalTable("compare"), choices);
         RunRule[] runs = [.. root.Tables("runs").Select(t => ReadRun(t, choices))];
         PredictionRule[] predictions = [.. root.Tables("predictions").Select(t => ReadPrediction(t, choices))];
+        JointRule[] joints = [.. root.Tables("joint").Select(t => ReadJoint(t, choices))];
         if (runs.Length == 0) throw root.Refuse("runs", "no [[runs]]", "at least one, saying which files are runs", "add [[runs]] with match, mode and layout");
         root.RefuseUnknown();
-        return (settings, runs, predictions);
+        return (settings, runs, predictions, joints);
     }
 
     static AnalysisSettings ReadSettings(TomlTable a, TomlTable? checks, TomlTable? compare, NightChoices choices)
@@ -134,6 +135,18 @@ static class NightReader
         if (rule.Name is { } name && (!name.Contains("{file}", StringComparison.Ordinal) || name.IndexOfAny(['/', '\\']) >= 0)) throw t.Refuse("name", $"\"{name}\"", "a name with {file} in it and without folders, such as \"{file}-side\"");
         return rule.Match.Contains('/', StringComparison.Ordinal) || rule.Match.Length == 0
             ? throw t.Refuse("match", $"\"{rule.Match}\"", "a file name pattern without folders, such as \"*.h5\"") : rule;
+    }
+
+    static JointRule ReadJoint(TomlTable t, NightChoices choices)
+    {
+        string name = t.Text("name");
+        string[] runs = [.. t.Texts("runs")];
+        string condition = t.Choice("condition", choices.Conditions);
+        double differ = t.OptionalQuantity("yield_may_differ", Dimension.Fraction)?.Value ?? 0.1;
+        t.RefuseUnknown();
+        if (name.Length == 0 || name.IndexOfAny(['/', '\\']) >= 0) throw t.Refuse("name", $"\"{name}\"", "a name without folders");
+        if (runs.Length < 2) throw t.Refuse("runs", $"{runs.Length} pattern", "two patterns over run names or more", "name the runs that share the beam");
+        return differ is > 0 and <= 2 ? new JointRule(name, runs, condition, differ) : throw t.Refuse("yield_may_differ", $"{differ:G4}", "more than 0, at most 200 %");
     }
 
     static PredictionRule ReadPrediction(TomlTable t, NightChoices choices)

@@ -68,8 +68,10 @@ static class TomlFile
                 var table = new TomlTable(Place(name, inline.Span), path);
                 Fill(table, inline.Items.Select(i => i.KeyValue!), name);
                 return table;
+            case ArraySyntax array when array.Items.All(i => i.Value is StringValueSyntax):
+                return array.Items.Select(i => ((StringValueSyntax)i.Value!).Value ?? "").ToArray();
             default:
-                throw new DataFaultException(Place(name, value.Span).At(path), value.Kind.ToString(), "a string, number, true, false or table", "write it in another way");
+                throw new DataFaultException(Place(name, value.Span).At(path), value.Kind.ToString(), "a string, number, true, false, table or list of strings", "write it in another way");
         }
     }
 

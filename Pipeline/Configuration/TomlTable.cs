@@ -64,6 +64,8 @@ sealed class TomlTable(TomlPlace place, string path)
 
     public string Text(string key) => Required(key, "a string").Content is string text ? text : throw Wrong(key, "a string in quotes");
 
+    public IReadOnlyList<string> Texts(string key) => Required(key, "[\"...\", \"...\"]").Content is string[] texts ? texts : throw Wrong(key, "a list of strings in brackets");
+
     public string? OptionalText(string key) => Has(key) ? Text(key) : null;
 
     /// <summary>One of a few words.</summary>
@@ -149,6 +151,7 @@ sealed class TomlTable(TomlPlace place, string path)
         string text => $"\"{text}\"",
         TomlTable => "a table",
         List<TomlTable> => "a list of tables",
+        string[] => "a list of strings",
         IFormattable number => number.ToString(null, CultureInfo.InvariantCulture),
         object other => other.ToString() ?? "",
     }, expected);

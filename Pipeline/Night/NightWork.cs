@@ -42,7 +42,23 @@ public static class NightWork
             RunResults.RemoveStale(Path.Combine(results, day.Runs[k].Name));
             log.Error(defect, "{Run}: not analysed. {Fault}", day.Runs[k].Name, fault.ToString());
         }
-        var night = new NightOutcome(day.Name, [.. done.OfType<RunOutcome>()], [.. failed.OfType<FailedRun>()], day.NotRuns);
+        var joints = new List<RunOutcome>();
+        var jointFailures = new List<FailedRun>();
+        foreach (JointRule rule in lab.Joints)
+        {
+            try
+            {
+                if (JointWork.Analyse(lab, day, rule, results) is { } joint) joints.Add(joint);
+                else log.Information("{Joint}: fewer than two runs of this day belong to it", rule.Name);
+            }
+            catch (DataFaultException e)
+            {
+                jointFailures.Add(new FailedRun(rule.Name, e.Fault));
+                RunResults.RemoveStale(Path.Combine(results, rule.Name));
+                log.Error("{Joint}: not analysed. {Fault}", rule.Name, e.Fault.ToString());
+            }
+        }
+        var night = new NightOutcome(day.Name, [.. done.OfType<RunOutcome>()], [.. failed.OfType<FailedRun>(), .. jointFailures], day.NotRuns) { Joints = joints };
         RunResults.Write(results, night);
         return night;
     }

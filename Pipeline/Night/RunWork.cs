@@ -90,6 +90,13 @@ public sealed class RunWork
         return run;
     }
 
+    /// <summary>What this run brings to a joint fit.</summary>
+    internal (JointMember Member, RunPart Part) ForJoint(string condition)
+    {
+        BinnedRun run = Ingest(out _);
+        return (new JointMember(_run.Name, run, condition, _setup, _run.Rule.Mode), new RunPart(_fingerprint, [.. _inputs, .. _zeroInputs], _reader));
+    }
+
     /// <summary>Sums to spectra and numbers.</summary>
     public IReadOnlyList<SpectrumOutcome> Fit(BinnedRun run, out bool reused)
     {

@@ -19,6 +19,7 @@ public static class NightPage
             <h2>All runs</h2>
             <div class="scroll"><table><tr><th>run</th><th>condition</th><th>verdict</th><th class="n">molecules per shot</th><th class="n">mean (m/s)</th><th class="n">spread (m/s)</th><th class="n">below capture</th><th class="n">shots cut</th></tr>
             {night.Runs.SelectMany(Rows)}{night.Failed.Select(f => Html.Of($"<tr><td>{f.Name}</td><td>–</td><td colspan=\"6\">not analysed</td></tr>"))}</table></div>
+            {Joints(night.Joints)}
             {NotRuns(night.NotRuns)}
             """));
     }
@@ -41,6 +42,12 @@ public static class NightPage
         <tr><td>{(k == 0 ? Link(run.Name) : Markup.None)}</td><td>{c.Name}</td><td>{(k == 0 ? Words.Of(run.Verdict.Judgement) : "")}</td><td class="n">{Numbers.WithTotal(c.Fit.Number)}</td>
         <td class="n">{Numbers.WithTotal(c.Fit.Mean)}</td><td class="n">{Numbers.WithTotal(c.Fit.Spread)}</td><td class="n">{Below(c.Fit.Below)}</td><td class="n">{(k == 0 ? Cut(run) : "")}</td></tr>
         """));
+
+    static Markup Joints(IReadOnlyList<RunOutcome> joints) => joints.Count == 0 ? Markup.None : Html.Of($"""
+        <h2>Runs fitted together</h2>
+        <div class="scroll"><table><tr><th>name</th><th>runs</th><th class="n">molecules per shot</th><th class="n">mean (m/s)</th><th class="n">spread (m/s)</th></tr>
+        {joints.Select(j => Html.Of($"""<tr><td>{Link(j.Name)}</td><td>{string.Join("; ", j.Conditions.Select(c => c.Name))}</td><td class="n">{Numbers.WithTotal(j.Conditions[0].Fit.Number)}</td><td class="n">{Numbers.WithTotal(j.Conditions[0].Fit.Mean)}</td><td class="n">{Numbers.WithTotal(j.Conditions[0].Fit.Spread)}</td></tr>"""))}</table></div>
+        """);
 
     static string Below(BelowCapture b) => b.Interval is { } i ? $"{Numbers.Digits(i.Low)} to {Numbers.Digits(i.High)}" : "not determined";
 

@@ -78,6 +78,7 @@ public static class RunPage
     {
         "Hz" => q with { Unit = "MHz", Quantity = q.Quantity.Times(1e-6) },
         "K" when !(q.Quantity.Value >= 1) => q with { Unit = "mK", Quantity = q.Quantity.Times(1e3) },
+        "s" => q with { Unit = "ms", Quantity = q.Quantity.Times(1e3) },
         "rad" => q with { Unit = "mrad", Quantity = q.Quantity.Times(1e3) },
         _ => q,
     };
