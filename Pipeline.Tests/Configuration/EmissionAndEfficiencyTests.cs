@@ -53,6 +53,16 @@ public sealed class EmissionAndEfficiencyTests : IDisposable
         Assert.Contains("all molecules", setup.Remarks[0], StringComparison.Ordinal);
     }
 
+    /// <summary>CaF at 4 K has 0.27719708 of its molecules in N = 1; the slope by half a kelvin on either side. Recomputed by this team.</summary>
+    [Fact]
+    public void Read_RotationalTemperature_GivesTheShareOfTheLevel()
+    {
+        Emission("profile = \"instant\"\nrotational_temperature = \"4.0 ± 0.5 K\"\nrotational_constant = \"10.26754 GHz\"\nprobed_level = 1");
+        Pipeline.Quantities.Measured share = ConfigurationReader.Read(Folder).Setup.LevelShare!.Value;
+        Assert.Equal(0.277197, share.Value, 1e-6);
+        Assert.InRange(share.Sigma, 0.02, 0.04);
+    }
+
     [Fact]
     public void Read_Template_GivesThePulse()
     {
@@ -98,6 +108,8 @@ public sealed class EmissionAndEfficiencyTests : IDisposable
     [InlineData("profile = \"gamma\"\nshape = \"2\"", "", "[emission] scale", "no such key")]
     [InlineData("profile = \"gamma\"\nshape = \"0\"\nscale = \"30 us\"", "", "[emission] shape", "must be positive")]
     [InlineData("profile = \"gamma\"\nshape = \"2\"\nscale = \"30 us\"\nlevel_share = \"120 %\"", "", "[emission] level_share", "(0, 1]")]
+    [InlineData("profile = \"instant\"\nlevel_share = \"0.3\"\nrotational_temperature = \"4 K\"", "", "[emission] level_share", "both")]
+    [InlineData("profile = \"instant\"\nrotational_temperature = \"4 K\"", "", "[emission] rotational_constant", "no such key")]
     [InlineData(Template + Baseline, "", "[emission] file", "which is not there")]
     [InlineData("profile = \"template\"\nfile = \"../emission.csv\"\nweighting = \"density\"\n" + Baseline, "time (us),signal", "[emission] file", "below the configuration folder")]
     [InlineData("profile = \"template\"\nfile = \"emission.csv\"\n" + Baseline, "time (us),signal", "[emission] weighting", "declare what the signal counts")]

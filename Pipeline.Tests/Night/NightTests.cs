@@ -25,6 +25,10 @@ public class NightTests
         Assert.False(File.Exists(Path.Combine(results, "1600-slowed", "result.json")));
         Assert.Contains("1600-slowed.h5: found 35656 bytes of", said, StringComparison.Ordinal);
         Assert.Contains("1600-slowed", await File.ReadAllTextAsync(Path.Combine(results, "night.html")), StringComparison.Ordinal);
+        // two runs that share a beam, with one spectrum; the truth is that of the first
+        JsonElement joint = Result(results, "beam-off").GetProperty("conditions");
+        Assert.Equal(["off, 0912-free", "off, 1545-doppler"], joint.EnumerateObject().Select(c => c.Name));
+        Assert.Equal(joint.GetProperty("off, 0912-free").GetProperty("mean_velocity_m_per_s").GetRawText(), joint.GetProperty("off, 1545-doppler").GetProperty("mean_velocity_m_per_s").GetRawText());
         // nothing half-written is left
         Assert.Empty(Directory.GetFiles(results, "*.part", SearchOption.AllDirectories));
         AssertTruth(results);

@@ -14,11 +14,24 @@ static class EmissionReader
     {
         string profile = t.Choice("profile", ["instant", "gaussian", "exponential", "exponential-gaussian", "gamma", "template", "unknown"]);
         Measured delay = t.OptionalQuantity("delay", Dimension.Time) ?? default;
-        Measured? share = t.OptionalQuantity("level_share", Dimension.Fraction);
-        if (share is { Value: not (> 0 and <= 1) }) throw t.Refuse("level_share", $"{share}", "a share in (0, 1]");
+        Measured? share = Share(t);
         EmissionProfile pulse = profile == "template" ? Template(t, delay, file) : Analytic(t, profile, delay);
         t.RefuseUnknown();
         return (pulse, share);
+    }
+
+    /// <summary>As stated, or of a thermal rotor.</summary>
+    static Measured? Share(TomlTable t)
+    {
+        Measured? share = t.OptionalQuantity("level_share", Dimension.Fraction), temperature = t.OptionalQuantity("rotational_temperature", Dimension.Temperature);
+        if (share is { Value: not (> 0 and <= 1) }) throw t.Refuse("level_share", $"{share}", "a share in (0, 1]");
+        if (temperature is not { } kelvin) return share;
+        if (share is not null) throw t.Refuse("level_share", "both level_share and rotational_temperature", "one of them", "leave out what the other one follows from");
+        double rotation = t.Quantity("rotational_constant", Dimension.Frequency).Value;
+        int level = t.Whole("probed_level", 0, 1000);
+        double At(double at) => RotationalLevels.Share(level, rotation, at);
+        if (!(kelvin.Value > 0) || !(kelvin.Sigma < kelvin.Value)) throw t.Refuse("rotational_temperature", $"{kelvin} K", "a positive temperature that is known to better than itself");
+        return t.Build(() => new Measured(At(kelvin.Value), 0.5 * Math.Abs(At(kelvin.Value + kelvin.Sigma) - At(kelvin.Value - kelvin.Sigma))));
     }
 
     static EmissionProfile Analytic(TomlTable t, string profile, Measured delay)

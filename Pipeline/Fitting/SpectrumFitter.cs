@@ -43,7 +43,7 @@ public static class SpectrumFitter
             Signal = signal,
             Flight = flight.Name,
             Spectra = [.. outcomes.Select(o => o.ToSpectrum(signal, weak))],
-            Others = OtherQuantities.Of(outcomes[0], setup, weak),
+            Others = OtherQuantities.Of(outcomes[0], outcomes.Find(o => o.Name == "shape"), setup, grid, weak),
             Below = BelowCaptureFinder.Find(window, responses.Main, setup, settings, yieldScatter, outcomes[0]),
             YieldScatter = yieldScatter,
             YieldFreedom = freedom,

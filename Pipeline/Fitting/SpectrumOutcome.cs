@@ -40,6 +40,12 @@ public sealed record VelocitySpectrum
 /// <param name="NotDeterminedBecause">Null where the value stands.</param>
 public sealed record BelowCapture(double CaptureSpeed, double Value, Interval? Interval, string? NotDeterminedBecause = null)
 {
+    /// <summary>How the interval was found.</summary>
+    public string Rule { get; init; } = "";
+
+    /// <summary>Share of all molecules that are below, at the same confidence; null where the number is not clear.</summary>
+    public Interval? Share { get; init; }
+
     /// <summary>Smallest and largest number over all non-negative spectra that the data allow, at the same confidence; what moves all
     /// numbers alike is added to both ends, not in squares; null where not determined.</summary>
     public Interval? Strict { get; init; }

@@ -40,6 +40,8 @@ public sealed class DayFolder
         RunFile[] runs = [.. files.Where(f => !predictions.Contains(f)).SelectMany(f => RunsOf(path, f, lab)).OrderBy(r => r.Name, StringComparer.Ordinal)];
         foreach (var same in runs.GroupBy(r => r.Name, StringComparer.Ordinal).Where(g => g.Count() > 1))
             throw new DataFaultException(path, $"two runs named {same.Key}: {string.Join(", ", same.Select(r => System.IO.Path.GetFileName(r.Path)))}", "one file a name", "rename one of them");
+        foreach (JointRule joint in lab.Joints.Where(j => runs.Any(r => r.Name == j.Name)))
+            throw new DataFaultException("night.toml", $"a [[joint]] named {joint.Name}, as a run is", "a name of its own: both would write to one folder", "rename the joint fit");
         var used = runs.SelectMany(r => Companions(r)).ToHashSet(StringComparer.Ordinal);
         return new DayFolder(path, runs, [.. files.Where(f => !used.Contains(f) && !predictions.Contains(f) && !predictions.Any(p => p.StartsWith(f + "/", StringComparison.Ordinal)))]);
     }

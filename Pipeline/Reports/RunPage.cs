@@ -90,7 +90,9 @@ public static class RunPage
 
     static string BelowText(BelowCapture b) => b.NotDeterminedBecause is { } because ? $"not determined, because {because}"
         : string.Create(CultureInfo.InvariantCulture,
-            $"{Numbers.Digits(b.Interval!.Value.Low)} to {Numbers.Digits(b.Interval.Value.High)} with {100 * b.Interval.Value.Confidence:G3} % confidence (estimate {Numbers.Digits(b.Value)}){StrictText(b.Strict)}");
+            $"{Numbers.Digits(b.Interval!.Value.Low)} to {Numbers.Digits(b.Interval.Value.High)} with {100 * b.Interval.Value.Confidence:G3} % confidence (estimate {Numbers.Digits(b.Value)}; {b.Rule}){ShareText(b.Share)}{StrictText(b.Strict)}");
+
+    static string ShareText(Interval? share) => share is { } s ? $"; {Numbers.Digits(100 * s.Low)} to {Numbers.Digits(100 * s.High)} % of all molecules" : "";
 
     static string StrictText(Interval? strict) => strict is { } s ? $"; {Numbers.Digits(s.Low)} to {Numbers.Digits(s.High)} over every non-negative spectrum that the signal allows" : "";
 

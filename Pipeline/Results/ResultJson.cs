@@ -78,6 +78,8 @@ static class ResultJson
             ["capture_m_per_s"] = Number(b.CaptureSpeed), ["molecules_per_shot"] = Number(b.Value), ["low"] = Number(b.Interval?.Low ?? double.NaN),
             ["high"] = Number(b.Interval?.High ?? double.NaN), ["confidence"] = Number(b.Interval?.Confidence ?? double.NaN),
         };
+        if (b.Rule.Length > 0) json["rule"] = b.Rule;
+        if (b.Share is { } share) json["share"] = new JsonObject { ["low"] = Number(share.Low), ["high"] = Number(share.High) };
         if (b.Strict is { } strict) json["over_all_spectra"] = new JsonObject { ["low"] = Number(strict.Low), ["high"] = Number(strict.High) };
         if (b.NotDeterminedBecause is { } because) json["not_determined_because"] = because;
         return json;

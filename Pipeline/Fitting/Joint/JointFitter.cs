@@ -51,7 +51,7 @@ public static class JointFitter
             outcomes[k] = outcomes[k] with
             {
                 Spectra = [.. runs.Select(r => r.ToSpectrum(signal, weak, part, start))], Below = below,
-                Others = [.. OtherQuantities.Of(runs[0], members[k].Setup, weak), .. PulseQuantities(found)],
+                Others = [.. OtherQuantities.Of(runs[0], runs.FirstOrDefault(r => r.Name == "shape"), members[k].Setup, grid, weak), .. PulseQuantities(found)],
                 Remarks = [.. outcomes[k].Remarks, Told(members, yieldMayDiffer)],
             };
         }
