@@ -27,4 +27,6 @@ public sealed record Decelerator
     public required int Stages { get; init => field = Guard.Positive(value); }
     /// <summary>Kinetic energy removed at each stage, J.</summary>
     public required Measured EnergyPerStage { get; init => field = Guard.NotNegative(value); }
+    /// <summary>Largest field on the axis of a stage, T; null where it is not stated.</summary>
+    public Measured? PeakField { get; init => field = value is { } b ? Guard.Positive(b) : null; }
 }

@@ -53,8 +53,9 @@ static class ApparatusReader
         var (entrance, length) = (t.Quantity("source_to_entrance", Dimension.Length), t.Quantity("length", Dimension.Length));
         int stages = t.Whole("stages", 1, 100_000);
         Measured energy = t.Quantity("energy_per_stage", Dimension.Energy);
+        Measured? field = t.OptionalQuantity("peak_field", Dimension.MagneticField);
         t.RefuseUnknown();
-        return t.Build(() => new Decelerator { SourceToEntrance = entrance, Length = length, Stages = stages, EnergyPerStage = energy });
+        return t.Build(() => new Decelerator { SourceToEntrance = entrance, Length = length, Stages = stages, EnergyPerStage = energy, PeakField = field });
     }
 
     /// <summary>A probe beside the usual one may stand elsewhere on the beam line.</summary>
