@@ -19,6 +19,17 @@ static class Python
         return output;
     }
 
+    /// <summary>Runs a script that needs SciPy, and returns what it prints.</summary>
+    public static string Run(string path, params string[] arguments)
+    {
+        Assert.True(File.Exists(Program) && Exit("import scipy.optimize") == 0, "no Python with scipy on this machine");
+        using Process process = Begin([path, .. arguments]);
+        string output = process.StandardOutput.ReadToEnd(), error = process.StandardError.ReadToEnd();
+        process.WaitForExit();
+        Assert.True(process.ExitCode == 0, error);
+        return output;
+    }
+
     static int Exit(string script)
     {
         using Process process = Start(script);
@@ -27,6 +38,8 @@ static class Python
         return process.ExitCode;
     }
 
-    static Process Start(string script) =>
-        Process.Start(new ProcessStartInfo(Program, ["-c", script]) { RedirectStandardError = true, RedirectStandardOutput = true, UseShellExecute = false })!;
+    static Process Start(string script) => Begin(["-c", script]);
+
+    static Process Begin(string[] arguments) =>
+        Process.Start(new ProcessStartInfo(Program, arguments) { RedirectStandardError = true, RedirectStandardOutput = true, UseShellExecute = false })!;
 }
