@@ -1,3 +1,5 @@
+using System.Buffers;
+
 namespace Pipeline.Numerics;
 
 /// <summary>Minimises x^T H x / 2 - g^T x with some variables bounded below by zero.</summary>
@@ -9,7 +11,6 @@ sealed class NonNegativeQuadratic
 {
     readonly int _n;
     readonly int _bounded;
-    readonly double[] _work;
     readonly double[] _trial;
     readonly int[] _index;
     /// <summary>Variables that rounding put back on their bound the moment they entered: not tried again until another one moves.</summary>
@@ -26,7 +27,6 @@ sealed class NonNegativeQuadratic
     {
         if (bounded < 0 || bounded > n) throw new ArgumentOutOfRangeException(nameof(bounded), bounded, $"must lie in [0, {n}]");
         (_n, _bounded) = (n, bounded);
-        _work = new double[n * n];
         _trial = new double[n];
         _index = new int[n];
         _refused = new bool[n];
@@ -129,15 +129,18 @@ sealed class NonNegativeQuadratic
     {
         int m = 0;
         for (int i = 0; i < _n; i++) if (Passive[i]) _index[m++] = i;
+        double[] factor = ArrayPool<double>.Shared.Rent(m * m);
         for (int a = 0; a < m; a++)
         {
-            int row = _index[a] * _n;
-            for (int b = 0; b <= a; b++) _work[a * m + b] = h[row + _index[b]];
+            ReadOnlySpan<double> row = h.AsSpan(_index[a] * _n, _n);
+            Span<double> packed = factor.AsSpan(a * m, a + 1);
+            for (int b = 0; b < packed.Length; b++) packed[b] = row[_index[b]];
             _trial[a] = g[_index[a]];
         }
-        if (!Cholesky.Factor(_work, m, m)) return -1;
-        Cholesky.Solve(_work, m, m, _trial);
-        return m;
+        bool regular = Cholesky.Factor(factor, m, m);
+        if (regular) Cholesky.Solve(factor, m, m, _trial);
+        ArrayPool<double>.Shared.Return(factor);
+        return regular ? m : -1;
     }
 
     int MostPromising(double[] h, ReadOnlySpan<double> g, double tolerance)
