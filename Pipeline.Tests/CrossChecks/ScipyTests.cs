@@ -10,7 +10,7 @@ namespace Pipeline.Tests.CrossChecks;
 /// <summary>The program's statistics and numerics against those of SciPy, which shares no code with them: see scipy_values.py.</summary>
 public class ScipyTests
 {
-    static readonly Lazy<JsonDocument> Values = new(() => JsonDocument.Parse(Python.Print("Pipeline.Tests", "CrossChecks", "scipy_values.py")));
+    static readonly Lazy<JsonDocument> Values = new(() => JsonDocument.Parse(Python.Print(["Pipeline.Tests", "CrossChecks", "scipy_values.py"])));
 
     /// <remarks>The quantile meets its chance to 2e-8 of itself, which moves the limit by less than 1e-8 of itself.</remarks>
     [SkippableFact]

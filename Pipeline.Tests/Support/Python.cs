@@ -22,14 +22,16 @@ static class Python
 
     /// <summary>What a script of the repository prints that needs SciPy.</summary>
     /// <param name="script">Path below the repository.</param>
-    public static string Print(params string[] script) =>
-        Scipy($"import runpy; runpy.run_path(r'{Path.Combine([Repository.Root, .. script])}', run_name='__main__')");
+    /// <param name="arguments">Of the script.</param>
+    public static string Print(string[] script, params string[] arguments) => Output(Path.Combine([Repository.Root, .. script]), arguments);
 
     /// <summary>What a script prints that needs SciPy.</summary>
-    public static string Scipy(string script)
+    public static string Scipy(string script) => Output("-c", script);
+
+    static string Output(string first, params string[] rest)
     {
         Skip.IfNot(HasSciPy.Value, "no Python with SciPy on this machine");
-        using Process process = Start(script);
+        using Process process = Begin([first, .. rest]);
         Task<string> error = process.StandardError.ReadToEndAsync();
         string output = process.StandardOutput.ReadToEnd();
         process.WaitForExit();
@@ -45,6 +47,8 @@ static class Python
         return process.ExitCode;
     }
 
-    static Process Start(string script) =>
-        Process.Start(new ProcessStartInfo(Program, ["-c", script]) { RedirectStandardError = true, RedirectStandardOutput = true, UseShellExecute = false })!;
+    static Process Start(string script) => Begin(["-c", script]);
+
+    static Process Begin(string[] arguments) =>
+        Process.Start(new ProcessStartInfo(Program, arguments) { RedirectStandardError = true, RedirectStandardOutput = true, UseShellExecute = false })!;
 }

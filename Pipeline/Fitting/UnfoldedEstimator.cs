@@ -54,6 +54,12 @@ sealed class UnfoldedEstimator : ISpectrumEstimator
 /// <summary>An unfolding that can be repeated with the same strength, weights and start.</summary>
 sealed class UnfoldedSpectrum(ResponseMatrix response, Design design, PenalisedFit fit, HeldSpectrum held, double strength) : FittedSpectrum
 {
+    /// <summary>[bins] inverse variances that every replica shares.</summary>
+    public double[] Weights => fit.Weights;
+
+    /// <summary>Of the second differences, in the units of the information.</summary>
+    public double Strength => strength;
+
     /// <remarks>For the same response, one round with the weights of the main fit: these come from its means, not from the replica.</remarks>
     public override Refitted Refit(FitWindow window, ResponseMatrix other) => ReferenceEquals(other, response) ? Replica(window) : Again(window, other);
 

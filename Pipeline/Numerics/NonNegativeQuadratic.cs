@@ -1,17 +1,25 @@
+using System.Buffers;
+
 namespace Pipeline.Numerics;
 
 /// <summary>Minimises x^T H x / 2 - g^T x with some variables bounded below by zero.</summary>
 /// <remarks>Active set on the normal equations, after Lawson and Hanson (1974) in the form of Bro and de Jong
-/// (J. Chemometrics 11, 393, 1997). A start from the solution of a similar problem needs few steps.</remarks>
+/// (J. Chemometrics 11, 393, 1997): it always ends, but moves one variable a step. Before it all variables that stand on the wrong side
+/// are exchanged at once, after Portugal, Judice and Vicente (Math. Comp. 63, 625, 1994): from the solution of a similar problem this needs a
+/// fifth of the steps, and mostly leaves nothing to do.</remarks>
 sealed class NonNegativeQuadratic
 {
     readonly int _n;
     readonly int _bounded;
-    readonly double[] _work;
     readonly double[] _trial;
     readonly int[] _index;
     /// <summary>Variables that rounding put back on their bound the moment they entered: not tried again until another one moves.</summary>
     readonly bool[] _refused;
+    readonly bool[] _wrong;
+    readonly double[] _start;
+
+    /// <summary>Exchanges that may leave as many variables on the wrong side as before: the published choice.</summary>
+    const int SpareExchanges = 3;
 
     /// <param name="n">Number of variables.</param>
     /// <param name="bounded">The first so many are bounded below by zero; the rest are free.</param>
@@ -19,10 +27,11 @@ sealed class NonNegativeQuadratic
     {
         if (bounded < 0 || bounded > n) throw new ArgumentOutOfRangeException(nameof(bounded), bounded, $"must lie in [0, {n}]");
         (_n, _bounded) = (n, bounded);
-        _work = new double[n * n];
         _trial = new double[n];
         _index = new int[n];
         _refused = new bool[n];
+        _wrong = new bool[n];
+        _start = new double[n];
         X = new double[n];
         Passive = new bool[n];
     }
@@ -49,6 +58,7 @@ sealed class NonNegativeQuadratic
         double scale = 0;
         foreach (double v in g) scale = Math.Max(scale, Math.Abs(v));
         double tolerance = 1e-10 * scale;
+        if (ExchangeBlocks(h, g, tolerance)) return true;
         Array.Clear(_refused);
         int entered = -1;
         for (int outer = 0; outer < 6 * _n + 10; outer++)
@@ -60,6 +70,33 @@ sealed class NonNegativeQuadratic
             if (entered < 0) return true;
             Passive[entered] = true;
         }
+        return false;
+    }
+
+    /// <summary>Exchanges every variable that is on the wrong side, while that leaves fewer of them.</summary>
+    /// <returns>Whether none is left; if not, X is feasible.</returns>
+    bool ExchangeBlocks(double[] h, ReadOnlySpan<double> g, double tolerance)
+    {
+        (int fewest, int spare) = (int.MaxValue, SpareExchanges);
+        X.CopyTo(_start);
+        while (true)
+        {
+            int m = SolvePassive(h, g), wrong = 0;
+            if (m < 0) break;
+            Array.Clear(X);
+            for (int k = 0; k < m; k++) X[_index[k]] = _trial[k];
+            for (int i = 0; i < _bounded; i++)
+            {
+                _wrong[i] = Passive[i] ? X[i] <= 0 : g[i] - Cholesky.Dot(h.AsSpan(i * _n, _n), X) > tolerance;
+                if (_wrong[i]) wrong++;
+            }
+            if (wrong == 0) return true;
+            if (wrong < fewest) (fewest, spare) = (wrong, SpareExchanges);
+            else if (--spare < 0) break;
+            for (int i = 0; i < _bounded; i++) Passive[i] ^= _wrong[i];
+        }
+        _start.CopyTo(X);
+        for (int i = 0; i < _bounded; i++) Passive[i] = X[i] > 0;
         return false;
     }
 
@@ -92,15 +129,18 @@ sealed class NonNegativeQuadratic
     {
         int m = 0;
         for (int i = 0; i < _n; i++) if (Passive[i]) _index[m++] = i;
+        double[] factor = ArrayPool<double>.Shared.Rent(m * m);
         for (int a = 0; a < m; a++)
         {
-            int row = _index[a] * _n;
-            for (int b = 0; b <= a; b++) _work[a * m + b] = h[row + _index[b]];
+            ReadOnlySpan<double> row = h.AsSpan(_index[a] * _n, _n);
+            Span<double> packed = factor.AsSpan(a * m, a + 1);
+            for (int b = 0; b < packed.Length; b++) packed[b] = row[_index[b]];
             _trial[a] = g[_index[a]];
         }
-        if (!Cholesky.Factor(_work, m, m)) return -1;
-        Cholesky.Solve(_work, m, m, _trial);
-        return m;
+        bool regular = Cholesky.Factor(factor, m, m);
+        if (regular) Cholesky.Solve(factor, m, m, _trial);
+        ArrayPool<double>.Shared.Return(factor);
+        return regular ? m : -1;
     }
 
     int MostPromising(double[] h, ReadOnlySpan<double> g, double tolerance)
