@@ -27,6 +27,8 @@ public sealed record Probe
     public Measured Detuning { get; init; }
     /// <summary>Laser reading of a scan at which the laser stands on the line centroid, Hz.</summary>
     public Measured AxisZero { get; init; }
+    /// <summary>Residual magnetic field where the beam crosses the light, T; of either sign.</summary>
+    public Measured Field { get; init; }
     /// <summary>Rms jitter of the laser, Hz; part of <see cref="DetuningSpread"/>.</summary>
     public Measured LaserJitter { get; init => field = Guard.NotNegative(value); }
     /// <summary>Rms width of all that spreads the detuning between molecules or shots, apart from their speed along the beam:

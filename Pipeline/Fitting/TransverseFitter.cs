@@ -84,18 +84,19 @@ sealed class TransverseLine
 {
     public const int Height = 0, Zero = 1, Spread = 2;
     readonly Setup _setup;
+    readonly IReadOnlyList<SpectralLine> _lines;
     readonly IReadOnlyList<double> _points;
     readonly double _speed, _low, _step, _along;
     readonly double[] _photons;
 
     public TransverseLine(Setup setup, IReadOnlyList<double> points, double speed)
     {
-        (_setup, _points, _speed) = (setup, points, speed);
+        (_setup, _lines, _points, _speed) = (setup, setup.Lines, points, speed);
         _along = Math.Abs(Math.Sin(setup.Probe.Angle.Value)) / setup.Species.Wavelength.Value;
         // photons of a molecule at rest along the laser, against detuning, without the spread that is fitted
         var yield = new DetectionYield(setup);
         _step = setup.Species.NaturalLinewidth.Value / 50;
-        double span = points.Max() - points.Min() + 60 * setup.Species.NaturalLinewidth.Value + 2 * setup.Species.Lines.Max(l => Math.Abs(l.OffsetHz));
+        double span = points.Max() - points.Min() + 60 * setup.Species.NaturalLinewidth.Value + 2 * _lines.Max(l => Math.Abs(l.OffsetHz));
         _low = -span;
         _photons = [.. Enumerable.Range(0, (int)Math.Ceiling(2 * span / _step) + 2).Select(k => DetectionYield.Photons(yield.ExposureTimesSpeed(_low + k * _step) / speed, setup.Species.PhotonLimit?.Value))];
         Peak = _photons.Max();
@@ -108,7 +109,7 @@ sealed class TransverseLine
     {
         double doppler = _speed * Math.Cos(_setup.Probe.Angle.Value) / _setup.Species.Wavelength.Value, jitter = _setup.Probe.LaserJitter.Value, sigma = double.Hypot(jitter, x[Spread] * _along), sum = 0, lines = 0;
         const int Nodes = 31;
-        foreach (SpectralLine line in _setup.Species.Lines)
+        foreach (SpectralLine line in _lines)
         {
             lines += line.Weight;
             double centre = _points[point] - x[Zero] - line.OffsetHz - doppler, mean = 0, weights = 0;

@@ -12,6 +12,7 @@ sealed class ScanYield
     /// <summary>Places in a cell at which counts are averaged.</summary>
     const int PerCell = 4;
     readonly Setup _setup;
+    readonly IReadOnlyList<SpectralLine> _lines;
     readonly double[] _lasers;
     readonly double _low, _step;
     readonly double[] _light;
@@ -24,13 +25,13 @@ sealed class ScanYield
     /// <param name="fastest">Highest speed that is asked for, m/s.</param>
     public ScanYield(Setup setup, SignalAxis axis, double fastest)
     {
-        _setup = setup;
+        (_setup, _lines) = (setup, setup.Lines);
         _lasers = [.. axis.Points.Select(p => p - setup.Probe.AxisZero.Value)];
         _light = [.. axis.Light];
         (_dim, _bright) = (_light.Min(), _light.Max());
         var yield = new DetectionYield(setup);
         _spread = yield.Spread;
-        double doppler = Math.Abs(fastest * Math.Cos(setup.Probe.Angle.Value) / setup.Species.Wavelength.Value), lines = setup.Species.Lines.Max(l => Math.Abs(l.OffsetHz));
+        double doppler = Math.Abs(fastest * Math.Cos(setup.Probe.Angle.Value) / setup.Species.Wavelength.Value), lines = _lines.Max(l => Math.Abs(l.OffsetHz));
         double most = _lasers.Max(Math.Abs) + doppler + lines + _spread.Max(s => Math.Abs(s.Shift));
         _step = setup.Species.NaturalLinewidth.Value / 100;
         _low = -most - 2 * _step;
@@ -48,12 +49,12 @@ sealed class ScanYield
     public double[] Counts(double from, double to)
     {
         var counts = new double[_lasers.Length];
-        double efficiency = _setup.CountsPerPhoton, lines = _setup.Species.Lines.Sum(l => l.Weight);
+        double efficiency = _setup.CountsPerPhoton, lines = _lines.Sum(l => l.Weight);
         for (int k = 0; k < PerCell; k++)
         {
             double speed = from + (k + 0.5) / PerCell * (to - from), doppler = speed * Math.Cos(_setup.Probe.Angle.Value) / _setup.Species.Wavelength.Value;
             for (int p = 0; p < counts.Length; p++)
-                foreach (SpectralLine line in _setup.Species.Lines)
+                foreach (SpectralLine line in _lines)
                     foreach ((double shift, double weight) in _spread)
                         counts[p] += efficiency / PerCell * line.Weight / lines * weight * DetectionYield.Photons(ExposureAt(p, _lasers[p] + shift - line.OffsetHz - doppler) / speed, _setup.Species.PhotonLimit?.Value);
         }
