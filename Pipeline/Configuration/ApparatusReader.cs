@@ -66,6 +66,7 @@ static class ApparatusReader
             throw t.Refuse("saturation", saturation is null ? "neither saturation nor scattering_rate" : "both saturation and scattering_rate", "one of them", "state how bright the probe is, once");
         Measured detuning = t.OptionalQuantity("detuning", Dimension.Frequency) ?? default;
         Measured zero = t.OptionalQuantity("axis_zero", Dimension.Frequency) ?? default;
+        Measured drift = t.OptionalQuantity("axis_drift", Dimension.Frequency) ?? default;
         Measured jitter = t.OptionalQuantity("laser_jitter", Dimension.Frequency) ?? default, transverse = t.OptionalQuantity("transverse_speed_spread", Dimension.Speed) ?? default;
         Measured field = t.OptionalQuantity("field", Dimension.MagneticField) ?? default;
         t.RefuseUnknown();
@@ -75,7 +76,7 @@ static class ApparatusReader
         double sigma = spread == 0 ? 0 : double.Hypot(jitter.Value * jitter.Sigma, transverse.Value * transverse.Sigma * project * project) / spread;
         return t.Build(() => new Probe
         {
-            Shape = shape, Width = width, Angle = angle, Saturation = saturation, ScatteringRate = rate, Detuning = detuning, DetuningSpread = new Measured(spread, sigma), LaserJitter = jitter, AxisZero = zero, Field = field,
+            Shape = shape, Width = width, Angle = angle, Saturation = saturation, ScatteringRate = rate, Detuning = detuning, DetuningSpread = new Measured(spread, sigma), LaserJitter = jitter, AxisZero = zero, AxisDrift = drift, Field = field,
         });
     }
 

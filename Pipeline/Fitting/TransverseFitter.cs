@@ -40,7 +40,9 @@ public static class TransverseFitter
             Signal = signal, Flight = "across the beam", Spectra = [],
             NotDeterminedBecause = "a scan across the beam tells the zero of the frequency axis and the transverse speeds, not the velocity along the beam",
             Below = new BelowCapture(setup.CaptureSpeed, double.NaN, null, "a scan across the beam"), YieldScatter = replicas.YieldScatter(window),
-            YieldFreedom = Math.Max(1, run.Scan(condition).Sum(g => g.BlockShots.Length - 1)), Remarks = signal.Remarks, Fitted = line.PerShot(best, window),
+            YieldFreedom = Math.Max(1, run.Scan(condition).Sum(g => g.BlockShots.Length - 1)), 
+            Remarks = [.. signal.Remarks, .. ScanDrift.Remarks(condition, signal.Axis, setup, new FittedScan(window, replicas, by => line.PerShot([best[0], best[1] + by, best[2]], window)))],
+            Fitted = line.PerShot(best, window),
             Others =
             [
                 new(FrequencyZero, "Hz", Of(x => x[TransverseLine.Zero])), new("transverse speed spread", "m/s", Wide(x => x[TransverseLine.Spread])),
@@ -91,7 +93,7 @@ sealed class TransverseLine
 
     public TransverseLine(Setup setup, SignalAxis axis, double speed)
     {
-        (_setup, _lines, _points, _speed) = (setup, setup.Lines, axis.Points, speed);
+        (_setup, _lines, _points, _speed) = (setup, setup.Lines, [.. axis.Points.Zip(axis.Order, setup.Probe.Steady)], speed);
         _along = Math.Abs(Math.Sin(setup.Probe.Angle.Value)) / setup.Species.Wavelength.Value;
         double Photons(double exposure) => DetectionYield.Photons(exposure / speed, setup.Species.PhotonLimit?.Value);
         // photons of a molecule at rest along the laser, against detuning, without the spread that is fitted

@@ -22,7 +22,7 @@ sealed class ScanYield
     public ScanYield(Setup setup, SignalAxis axis, double fastest)
     {
         (_setup, _lines) = (setup, setup.Lines);
-        _lasers = [.. axis.Points.Select(p => p - setup.Probe.AxisZero.Value)];
+        _lasers = [.. axis.Points.Zip(axis.Order, setup.Probe.Steady).Select(p => p - setup.Probe.AxisZero.Value)];
         _spread = new DetectionYield(setup).Spread;
         double doppler = Math.Abs(fastest * Math.Cos(setup.Probe.Angle.Value) / setup.Species.Wavelength.Value), lines = _lines.Max(l => Math.Abs(l.OffsetHz));
         double most = _lasers.Max(Math.Abs) + doppler + lines + _spread.Max(s => Math.Abs(s.Shift));
