@@ -35,6 +35,15 @@ public sealed class FieldReaderTests : IDisposable
     }
 
     [Fact]
+    public void Read_Drift_IsThatOfTheProbeItStandsUnder()
+    {
+        Edit("apparatus.toml", "# axis_drift = \"0 ± 1 MHz\"", "axis_drift = \"0.5 ± 1 MHz\"");
+        LabConfiguration lab = ConfigurationReader.Read(_folder);
+        Assert.Equal((0.5e6, 1e6), (lab.Probes["angled"].AxisDrift.Value, lab.Probes["angled"].AxisDrift.Sigma));
+        Assert.Equal(default, lab.Setup.Probe.AxisDrift);
+    }
+
+    [Fact]
     public void Read_HyperfineSpread_SplitsEveryLine()
     {
         Edit("apparatus.toml", "detuning = \"0 ± 0.3 MHz\"", "detuning = \"0 MHz\"\nfield = \"1 G\"");

@@ -18,7 +18,9 @@ sealed class MadeUpScan
     public double[]? Order { get; init; }
     /// <summary>[points] probe light, 1 in the mean; null: 1.</summary>
     public double[]? Light { get; init; }
-    /// <summary>Molecules a shot: a normal beam of 140 m/s with a spread of 15 m/s.</summary>
+    /// <summary>Shape of the beam: normal with a mean of 140 m/s and a spread of 15 m/s.</summary>
+    public Func<double, double> Beam { get; init; } = v => Math.Exp(-0.5 * Math.Pow((v - 140) / 15, 2));
+    /// <summary>Molecules a shot.</summary>
     public double Molecules { get; init; } = 800;
 
     /// <summary>A beam across 45 degrees on one metre of free flight, 606.3 nm and a natural width of 8.3 MHz.</summary>
@@ -34,15 +36,13 @@ sealed class MadeUpScan
 
     public static double[] Steps(double from, double to, int points) => [.. Enumerable.Range(0, points).Select(k => from + k * (to - from) / (points - 1))];
 
-    public static double Beam(double v) => Math.Exp(-0.5 * Math.Pow((v - 140) / 15, 2));
-
     /// <param name="shots">Of each point, in two blocks.</param>
     /// <param name="random">Poisson draws; null: expected counts.</param>
     public BinnedRun Make(int shots = 8, Random? random = null)
     {
         SignalAxis time = _steady.Axis;
         double[] cells = [.. Enumerable.Range(0, Fine.Cells).Select(c => Beam(Fine.Centre(c)))];
-        var axis = new SignalAxis(time.OriginSeconds, time.TickSeconds, time.Edges, Readings, Light);
+        var axis = new SignalAxis(time.OriginSeconds, time.TickSeconds, time.Edges, Readings, Light, Order);
         double[] signal = new MapResponse().Build(Nature, "off", axis, Fine).Fold([.. cells.Select(c => Molecules * c / cells.Sum())]);
         BinnedRun steady = _steady.Make(4 * Readings.Length, 4, random);
         return steady with
@@ -63,7 +63,7 @@ sealed class MadeUpScan
         }
         return new ShotGroup
         {
-            Condition = "off", Kind = ShotKind.Signal, Point = point, Detuning = Readings[point],
+            Condition = "off", Kind = ShotKind.Signal, Point = point, Detuning = Readings[point], Order = Order?[point] ?? 0,
             BlockSums = [.. Enumerable.Range(0, 2).Select(_ => Enumerable.Range(0, time.TimeBins).Select(i => random is null ? Mean(i) : MathNet.Numerics.Distributions.Poisson.Sample(random, Mean(i))).ToArray())],
             BlockShots = [each, each], BlockProbeMonitor = [each * light, each * light], BlockAblationMonitor = [each, each], FullSum = new double[time.Edges[^1]],
         };
