@@ -50,6 +50,8 @@ public static class Nuisances
         new("probe angle", s => s.Probe.Angle, (s, m) => s with { Probe = s.Probe with { Angle = m } }),
         new("probe detuning", s => s.Probe.Detuning, (s, m) => s with { Probe = s.Probe with { Detuning = m } }),
         new("frequency zero", s => s.Probe.AxisZero, (s, m) => s with { Probe = s.Probe with { AxisZero = m } }),
+        new("axis drift", s => s.Probe.AxisDrift, (s, m) => s with { Probe = s.Probe with { AxisDrift = m } }),
+        new("residual field", s => s.Probe.Field, (s, m) => s with { Probe = s.Probe with { Field = m } }),
         new("saturation", s => s.Probe.Saturation, (s, m) => s with { Probe = s.Probe with { Saturation = m } }),
         new("scattering rate", s => s.Probe.ScatteringRate, (s, m) => s with { Probe = s.Probe with { ScatteringRate = m } }),
         new("natural linewidth", s => s.Species.NaturalLinewidth, (s, m) => s with { Species = s.Species with { NaturalLinewidth = m } }),

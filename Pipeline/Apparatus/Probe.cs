@@ -29,11 +29,21 @@ public sealed record Probe
     public Measured Detuning { get; init; }
     /// <summary>Laser reading of a scan at which the laser stands on the line centroid, Hz.</summary>
     public Measured AxisZero { get; init; }
+    /// <summary>How far the laser moves up against its own reading from the first kept shot of a run to the last, evenly in shots, Hz;
+    /// <see cref="AxisZero"/> is that of the middle.</summary>
+    public Measured AxisDrift { get; init; }
+    /// <summary>Residual magnetic field where the beam crosses the light, T; of either sign.</summary>
+    public Measured Field { get; init; }
     /// <summary>Rms jitter of the laser, Hz; part of <see cref="DetuningSpread"/>.</summary>
     public Measured LaserJitter { get; init => field = Guard.NotNegative(value); }
     /// <summary>Rms width of all that spreads the detuning between molecules or shots, apart from their speed along the beam:
     /// laser jitter and transverse Doppler shifts, Hz.</summary>
     public Measured DetuningSpread { get; init => field = Guard.NotNegative(value); }
+
+    /// <summary>What the laser would read without its drift, Hz.</summary>
+    /// <param name="reading">Hz.</param>
+    /// <param name="order">Place in the run, -0.5 first to 0.5 last.</param>
+    public double Steady(double reading, double order) => reading + AxisDrift.Value * order;
 
     /// <summary>The same probe, this much brighter.</summary>
     public Probe WithLight(double times) => this with

@@ -24,6 +24,8 @@ public sealed record Setup
     public Measured? LevelShare { get; init => field = value is { } share ? Guard.Share(share) : null; }
     /// <summary>Counts for each photon that molecules would scatter if all were in the probed level.</summary>
     public double CountsPerPhoton => Detector.Efficiency.Value * (LevelShare?.Value ?? 1);
+    /// <summary>Lines of the species in the residual field at the probe: what every mode of measurement sees.</summary>
+    public IReadOnlyList<SpectralLine> Lines => LinesInField.Of(Species.Lines, Probe.Field.Value);
     /// <summary>Flight by condition name.</summary>
     public required IReadOnlyDictionary<string, FlightKind> Conditions { get; init; }
     /// <summary>Capture velocity of the user's trap, m/s.</summary>

@@ -74,13 +74,17 @@ static class ApparatusReader
             throw t.Refuse("saturation", saturation is null ? "neither saturation nor scattering_rate" : "both saturation and scattering_rate", "one of them", "state how bright the probe is, once");
         Measured detuning = t.OptionalQuantity("detuning", Dimension.Frequency) ?? default;
         Measured zero = t.OptionalQuantity("axis_zero", Dimension.Frequency) ?? default;
+        Measured drift = t.OptionalQuantity("axis_drift", Dimension.Frequency) ?? default;
         Measured jitter = t.OptionalQuantity("laser_jitter", Dimension.Frequency) ?? default, transverse = t.OptionalQuantity("transverse_speed_spread", Dimension.Speed) ?? default;
+        Measured field = t.OptionalQuantity("field", Dimension.MagneticField) ?? default;
         t.RefuseUnknown();
+        if (field != default && species.Lines.All(l => l.FieldFactor is null))
+            throw t.Refuse("field", $"a field, and no line of {species.Name} with g_m", "how lines move in it", "state g_m = ... under [[lines]] of the species (0 for a line that does not move), or g_m_spread = ... under its [hyperfine]");
         double project = Math.Abs(Math.Sin(angle.Value)) / species.Wavelength.Value, spread = double.Hypot(jitter.Value, transverse.Value * project);
         double sigma = spread == 0 ? 0 : double.Hypot(jitter.Value * jitter.Sigma, transverse.Value * transverse.Sigma * project * project) / spread;
         return t.Build(() => new Probe
         {
-            Shape = shape, Width = width, Angle = angle, Saturation = saturation, ScatteringRate = rate, Detuning = detuning, DetuningSpread = new Measured(spread, sigma), LaserJitter = jitter, AxisZero = zero,
+            Shape = shape, Width = width, Angle = angle, Saturation = saturation, ScatteringRate = rate, Detuning = detuning, DetuningSpread = new Measured(spread, sigma), LaserJitter = jitter, AxisZero = zero, AxisDrift = drift, Field = field,
         });
     }
 

@@ -17,10 +17,13 @@ static class HyperfineReader
         double b = t.Has("fermi_b") ? Hertz("fermi_b") : HyperfineConstants.FermiBOf(Hertz("fermi_contact"), dipolar);
         double nuclear = constants.Optional("nuclear_spin_rotation", Dimension.Frequency)?.Value ?? 0;
         int level = t.Whole("level", 0, 1000);
+        double? spread = t.Has("g_m_spread") ? t.Number("g_m_spread") : null;
+        if (spread < 0) throw t.Refuse("g_m_spread", $"{spread:G4}", "0 or more: lines are split to both sides by it");
         t.RefuseUnknown();
-        return t.Build(() => HyperfineLevels.Lines(HyperfineLevels.Of(new HyperfineConstants
+        SpectralLine[] lines = t.Build(() => HyperfineLevels.Lines(HyperfineLevels.Of(new HyperfineConstants
         {
             RotationalConstant = rotation, SpinRotation = spin, FermiB = b, DipolarC = dipolar, NuclearSpinRotation = nuclear,
         }, level)));
+        return [.. lines.Select(l => l with { FieldFactor = spread, Mixed = spread is not null })];
     }
 }

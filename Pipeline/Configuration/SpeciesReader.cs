@@ -30,7 +30,7 @@ static class SpeciesReader
 
     static SpectralLine ReadLine(TomlTable t)
     {
-        var line = new SpectralLine(t.Quantity("offset", Dimension.Frequency).Value, t.Number("weight"));
+        var line = new SpectralLine(t.Quantity("offset", Dimension.Frequency).Value, t.Number("weight")) { FieldFactor = t.Has("g_m") ? t.Number("g_m") : null };
         t.RefuseUnknown();
         return line.Weight > 0 ? line : throw t.Refuse("weight", $"{line.Weight}", "a positive weight");
     }

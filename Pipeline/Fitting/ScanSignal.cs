@@ -28,7 +28,7 @@ static class ScanSignal
         int[] edges = TimeEdges(run.Axis, scanned, settings);
         NetSignal[] parts = [.. points.Select(fit.Under)];
         double shots = points.Sum(p => p.Shots), monitor = points.Sum(p => p.BlockAblationMonitor.Sum()) / shots;
-        var axis = new SignalAxis(run.Axis.OriginSeconds, run.Axis.TickSeconds, [.. edges.Select(e => run.Axis.Edges[e])], [.. points.Select(p => p.Detuning)], Light(points));
+        var axis = new SignalAxis(run.Axis.OriginSeconds, run.Axis.TickSeconds, [.. edges.Select(e => run.Axis.Edges[e])], [.. points.Select(p => p.Detuning)], Light(points), [.. points.Select(p => p.Order)]);
         double[] Stack(Func<NetSignal, double[]> of) => [.. parts.SelectMany(p => Rebin(of(p), edges))];
         return new NetSignal
         {

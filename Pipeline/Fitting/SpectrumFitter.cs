@@ -47,8 +47,16 @@ public static class SpectrumFitter
             Below = BelowCaptureFinder.Find(window, responses.Main, setup, settings, yieldScatter, outcomes[0]),
             YieldScatter = yieldScatter,
             YieldFreedom = freedom,
-            Remarks = [.. signal.Remarks, .. setup.Remarks, .. refused, .. UnseenRemarks(condition, window, responses.Main), .. BlockRemarks(run, condition)],
+            Remarks = [.. signal.Remarks, .. setup.Remarks, .. refused, .. UnseenRemarks(condition, window, responses.Main), .. BlockRemarks(run, condition),
+                .. mode.Scanned == Scanned.Nothing ? [] : ScanDrift.Remarks(condition, signal.Axis, setup, Scan(window, replicas, setup, build, outcomes[0].Main))],
         };
+    }
+
+    static FittedScan? Scan(FitWindow window, Replicas replicas, Setup setup, Func<Setup, ResponseMatrix> build, FittedSpectrum fit)
+    {
+        if (fit.Refusal is not null) return null;
+        ResponseMatrix Moved(double by) => build(setup with { Probe = setup.Probe with { AxisZero = new(setup.Probe.AxisZero.Value + by) } });
+        return new FittedScan(window, replicas, by => Moved(by).Fold(fit.Molecules)[window.First..(window.First + window.Count)]);
     }
 
     const string NotUnique = "arrival time has no unique speed in this condition; folded predictions can be compared, a Doppler scan would tell";

@@ -9,7 +9,7 @@ namespace Pipeline.Fitting;
 
 /// <summary>A laser scan across the beam: where the axis has its zero, and how fast the molecules move along the laser.</summary>
 /// <remarks>The lines of the species, their depletion at the mean speed of the beam, laser jitter and a normal spread of transverse speeds are
-/// fitted to the summed signal of each point; temperature is m sigma^2 / k. The mean speed comes from the mean arrival time of the same run.</remarks>
+/// fitted to the summed signal of each point, each in its own light; temperature is m sigma^2 / k. The mean speed comes from the mean arrival time of the same run.</remarks>
 public static class TransverseFitter
 {
     /// <summary>Name in the configuration.</summary>
@@ -23,24 +23,26 @@ public static class TransverseFitter
         var replicas = new Replicas(run, signal, r => ModeSignal.Of(r, condition, background, Scanned.Detuning, setup.Detector, settings), settings);
         double speed = MeanSpeed(background.Subtract(run.WithoutPoints(), condition, setup.Detector), setup, settings);
         double net = window.Total.Sum() - window.Background.Sum(), error = Math.Sqrt(window.Total.Select((t, i) => window.Variance(i, t)).Sum());
-        var line = new TransverseLine(setup, signal.Axis.Points, speed);
+        var line = new TransverseLine(setup, signal.Axis, speed);
         double[] best = line.Find(window, Starts(window, signal.Axis.Points));
         double[][] drawn = replicas.Map(w => line.Find(w, [best]));
         (string Name, double[] Up, double[] Down)[] shifted = [.. Nuisances.Of(setup).Where(n => n.Name != "frequency zero" && !n.ScalesOnly).Select(n =>
-            (n.Name, new TransverseLine(n.Shift(setup, 1), signal.Axis.Points, speed).Find(window, [best]), new TransverseLine(n.Shift(setup, -1), signal.Axis.Points, speed).Find(window, [best])))];
+            (n.Name, new TransverseLine(n.Shift(setup, 1), signal.Axis, speed).Find(window, [best]), new TransverseLine(n.Shift(setup, -1), signal.Axis, speed).Find(window, [best])))];
         Quantity Of(Func<double[], double> of) => net < ClearSignal * error ? Quantity.NotDetermined("the net signal is less than five of its standard errors")
             : Quantity.Of(of(best), Math.Sqrt(Replicas.Variance([.. drawn.Select(of)])), [.. shifted.Select(s => new BudgetLine(s.Name, 0.5 * (of(s.Up) - of(s.Down))))]);
         Quantity spread = Of(x => x[TransverseLine.Spread]);
         // a width that noise can hide is bounded from above: the scatter of replicas that pile up at zero is no error of it
         bool hidden = !(spread.Value > 2 * spread.Total) || best[TransverseLine.Spread] < 1e-3;
-        string most = string.Create(System.Globalization.CultureInfo.InvariantCulture, $"the lines hide it: at most {Largest(setup, signal.Axis.Points, speed, window, best):G3} m/s with 95 % confidence (profile likelihood, the brightness of the probe within its uncertainty)");
+        string most = string.Create(System.Globalization.CultureInfo.InvariantCulture, $"the lines hide it: at most {Largest(setup, signal.Axis, speed, window, best):G3} m/s with 95 % confidence (profile likelihood, the brightness of the probe within its uncertainty)");
         Quantity Wide(Func<double[], double> of) => hidden && spread.NotDeterminedBecause is null ? Quantity.NotDetermined(most) : Of(of);
         return new SpectrumOutcome
         {
             Signal = signal, Flight = "across the beam", Spectra = [],
             NotDeterminedBecause = "a scan across the beam tells the zero of the frequency axis and the transverse speeds, not the velocity along the beam",
             Below = new BelowCapture(setup.CaptureSpeed, double.NaN, null, "a scan across the beam"), YieldScatter = replicas.YieldScatter(window),
-            YieldFreedom = Math.Max(1, run.Scan(condition).Sum(g => g.BlockShots.Length - 1)), Remarks = signal.Remarks, Fitted = line.PerShot(best, window),
+            YieldFreedom = Math.Max(1, run.Scan(condition).Sum(g => g.BlockShots.Length - 1)), 
+            Remarks = [.. signal.Remarks, .. ScanDrift.Remarks(condition, signal.Axis, setup, new FittedScan(window, replicas, by => line.PerShot([best[0], best[1] + by, best[2]], window)))],
+            Fitted = line.PerShot(best, window),
             Others =
             [
                 new(FrequencyZero, "Hz", Of(x => x[TransverseLine.Zero])), new("transverse speed spread", "m/s", Wide(x => x[TransverseLine.Spread])),
@@ -51,9 +53,9 @@ public static class TransverseFitter
     }
 
     /// <summary>Power broadening hides the same width: the largest limit over brighter and dimmer light.</summary>
-    static double Largest(Setup setup, IReadOnlyList<double> points, double speed, FitWindow window, double[] best) =>
+    static double Largest(Setup setup, SignalAxis axis, double speed, FitWindow window, double[] best) =>
         Nuisances.Of(setup).Where(n => n.Name is "saturation" or "scattering rate" or "natural linewidth").SelectMany(n => new[] { n.Shift(setup, 1), n.Shift(setup, -1) }).Append(setup)
-            .Max(s => new TransverseLine(s, points, speed).LargestSpread(window, best));
+            .Max(s => new TransverseLine(s, axis, speed).LargestSpread(window, best));
 
     /// <summary>Name of the quantity that scans of other runs take their zero from.</summary>
     public const string FrequencyZero = "frequency zero";
@@ -84,49 +86,39 @@ sealed class TransverseLine
 {
     public const int Height = 0, Zero = 1, Spread = 2;
     readonly Setup _setup;
+    readonly IReadOnlyList<SpectralLine> _lines;
     readonly IReadOnlyList<double> _points;
-    readonly double _speed, _low, _step, _along;
-    readonly double[] _photons;
+    readonly double _speed, _along, _peak;
+    readonly LightTable _photons;
 
-    public TransverseLine(Setup setup, IReadOnlyList<double> points, double speed)
+    public TransverseLine(Setup setup, SignalAxis axis, double speed)
     {
-        (_setup, _points, _speed) = (setup, points, speed);
+        (_setup, _lines, _points, _speed) = (setup, setup.Lines, [.. axis.Points.Zip(axis.Order, setup.Probe.Steady)], speed);
         _along = Math.Abs(Math.Sin(setup.Probe.Angle.Value)) / setup.Species.Wavelength.Value;
+        double Photons(double exposure) => DetectionYield.Photons(exposure / speed, setup.Species.PhotonLimit?.Value);
         // photons of a molecule at rest along the laser, against detuning, without the spread that is fitted
-        var yield = new DetectionYield(setup);
-        _step = setup.Species.NaturalLinewidth.Value / 50;
-        double span = points.Max() - points.Min() + 60 * setup.Species.NaturalLinewidth.Value + 2 * setup.Species.Lines.Max(l => Math.Abs(l.OffsetHz));
-        _low = -span;
-        _photons = [.. Enumerable.Range(0, (int)Math.Ceiling(2 * span / _step) + 2).Select(k => DetectionYield.Photons(yield.ExposureTimesSpeed(_low + k * _step) / speed, setup.Species.PhotonLimit?.Value))];
-        Peak = _photons.Max();
+        double span = _points.Max() - _points.Min() + 60 * setup.Species.NaturalLinewidth.Value + 2 * _lines.Max(l => Math.Abs(l.OffsetHz));
+        _photons = new LightTable(setup, axis.Light, span, setup.Species.NaturalLinewidth.Value / 50, Photons);
+        _peak = Photons(new DetectionYield(setup).ExposureTimesSpeed(0));
     }
-
-    double Peak { get; }
 
     /// <summary>[points] relative to a molecule in the middle of the line; the height is counts a shot there.</summary>
     double At(double[] x, int point)
     {
         double doppler = _speed * Math.Cos(_setup.Probe.Angle.Value) / _setup.Species.Wavelength.Value, jitter = _setup.Probe.LaserJitter.Value, sigma = double.Hypot(jitter, x[Spread] * _along), sum = 0, lines = 0;
         const int Nodes = 31;
-        foreach (SpectralLine line in _setup.Species.Lines)
+        foreach (SpectralLine line in _lines)
         {
             lines += line.Weight;
             double centre = _points[point] - x[Zero] - line.OffsetHz - doppler, mean = 0, weights = 0;
             for (int k = 0; k < Nodes; k++)
             {
                 double u = -5 + 10.0 * k / (Nodes - 1), w = Math.Exp(-0.5 * u * u);
-                (mean, weights) = (mean + w * Photons(centre + u * sigma), weights + w);
+                (mean, weights) = (mean + w * _photons.At(point, centre + u * sigma), weights + w);
             }
             sum += line.Weight * mean / weights;
         }
-        return x[Height] * sum / lines / Peak;
-    }
-
-    double Photons(double delta)
-    {
-        double place = Math.Clamp((delta - _low) / _step, 0, _photons.Length - 2);
-        int k = (int)place;
-        return _photons[k] + (place - k) * (_photons[k + 1] - _photons[k]);
+        return x[Height] * sum / lines / _peak;
     }
 
     /// <summary>The best of all starts; variances of the model, renewed three times.</summary>

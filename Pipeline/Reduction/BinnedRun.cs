@@ -11,6 +11,8 @@ public sealed record ShotGroup
     public int Point { get; init; } = -1;
     /// <summary>Mean laser reading of the kept shots, Hz; NaN where there is none.</summary>
     public double Detuning { get; init; } = double.NaN;
+    /// <summary>Mean place of the kept shots in the run: -0.5 for its first kept shot, 0.5 for its last; 0 where it has only one.</summary>
+    public double Order { get; init; }
     /// <summary>[blocks][bins] sums of the samples in each bin.</summary>
     public required double[][] BlockSums { get; init; }
     /// <summary>[blocks] kept shots in each block; weights of a resampled run may be fractional.</summary>
@@ -57,7 +59,7 @@ public sealed record BinnedRun
     {
         Groups = [.. Groups.GroupBy(g => (g.Condition, g.Kind)).Select(g => g.Count() == 1 ? g.First() with { Point = -1 } : g.First() with
         {
-            Point = -1, Detuning = double.NaN,
+            Point = -1, Detuning = double.NaN, Order = 0,
             BlockSums = [.. g.SelectMany(p => p.BlockSums)], BlockShots = [.. g.SelectMany(p => p.BlockShots)], BlockProbeMonitor = [.. g.SelectMany(p => p.BlockProbeMonitor)],
             BlockAblationMonitor = [.. g.SelectMany(p => p.BlockAblationMonitor)], BaselineVariance = g.Sum(p => p.BaselineVariance),
             FullSum = [.. Enumerable.Range(0, g.First().FullSum.Length).Select(i => g.Sum(p => p.FullSum[i]))],

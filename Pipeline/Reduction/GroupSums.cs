@@ -2,6 +2,13 @@ using System.Runtime.InteropServices;
 
 namespace Pipeline.Reduction;
 
+/// <summary>What is summed beside the samples of a shot.</summary>
+/// <param name="Probe">Monitor less its zero, V.</param>
+/// <param name="Ablation">Monitor less its zero, V.</param>
+/// <param name="Detuning">Laser reading, Hz.</param>
+/// <param name="Place">Place of the shot in the run.</param>
+readonly record struct ShotReadings(double Probe, double Ablation, double Detuning, int Place);
+
 /// <summary>Running sums of one condition and kind. Codes are added as integers, so the order of shots cannot change the result.</summary>
 sealed class GroupSums(string condition, ShotKind kind, int point, RecordShape shape, SignalAxis axis, int shotsPerBlock)
 {
@@ -10,14 +17,18 @@ sealed class GroupSums(string condition, ShotKind kind, int point, RecordShape s
     readonly long[] _codeSum = new long[shape.Samples];
     readonly double[] _valueSum = new double[shape.Samples];
     int _kept;
-    double _detuning;
+    double _detuning, _place;
 
     public string Condition => condition;
     public ShotKind Kind => kind;
+    /// <summary>Place of the earliest kept shot.</summary>
+    public int First { get; private set; } = int.MaxValue;
+    /// <summary>Place of the latest kept shot.</summary>
+    public int Last { get; private set; } = int.MinValue;
 
-    public void Add(ReadOnlySpan<int> codes, double probe, double ablation, double detuning)
+    public void Add(ReadOnlySpan<int> codes, ShotReadings readings)
     {
-        double[] bins = Begin(probe, ablation, detuning);
+        double[] bins = Begin(readings);
         for (int b = 0; b < bins.Length; b++)
         {
             long sum = 0;
@@ -33,9 +44,9 @@ sealed class GroupSums(string condition, ShotKind kind, int point, RecordShape s
     /// <summary>Analog: variance of the summed baselines, V^2.</summary>
     public double BaselineVariance { get; set; }
 
-    public void Add(ReadOnlySpan<double> values, double probe, double ablation, double detuning)
+    public void Add(ReadOnlySpan<double> values, ShotReadings readings)
     {
-        double[] bins = Begin(probe, ablation, detuning);
+        double[] bins = Begin(readings);
         for (int b = 0; b < bins.Length; b++)
             for (int i = axis.Edges[b]; i < axis.Edges[b + 1]; i++)
             {
@@ -44,9 +55,11 @@ sealed class GroupSums(string condition, ShotKind kind, int point, RecordShape s
             }
     }
 
-    double[] Begin(double probe, double ablation, double detuning)
+    double[] Begin(ShotReadings readings)
     {
-        _detuning += detuning;
+        _detuning += readings.Detuning;
+        _place += readings.Place;
+        (First, Last) = (Math.Min(First, readings.Place), Math.Max(Last, readings.Place));
         if (_kept++ % shotsPerBlock == 0)
         {
             _sums.Add(new double[axis.Bins]);
@@ -55,8 +68,8 @@ sealed class GroupSums(string condition, ShotKind kind, int point, RecordShape s
             _ablation.Add(0);
         }
         CollectionsMarshal.AsSpan(_shots)[^1] += 1;
-        CollectionsMarshal.AsSpan(_probe)[^1] += probe;
-        CollectionsMarshal.AsSpan(_ablation)[^1] += ablation;
+        CollectionsMarshal.AsSpan(_probe)[^1] += readings.Probe;
+        CollectionsMarshal.AsSpan(_ablation)[^1] += readings.Ablation;
         return _sums[^1];
     }
 
@@ -74,6 +87,9 @@ sealed class GroupSums(string condition, ShotKind kind, int point, RecordShape s
         BlockAblationMonitor = [.. _ablation],
         FullSum = [.. _codeSum.Select((codes, i) => (codes + _valueSum[i]) * shape.Scale + shape.Offset * _kept)],
     };
+
+    /// <summary>The same with its mean place between the first and the last kept shot of the run.</summary>
+    public ShotGroup ToGroup(int first, int last) => ToGroup() with { Order = last > first && _kept > 0 ? (_place / _kept - first) / (last - first) - 0.5 : 0 };
 
     double[] PhysicalBlock(double[] sums, int block)
     {

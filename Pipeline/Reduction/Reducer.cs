@@ -35,6 +35,7 @@ sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector
     readonly IReadOnlyList<IShotCheck> _checks = ShotChecks.For(settings, shape, allShots);
     /// <summary>Analog samples are summed in volts, less their baseline; counts as recorded.</summary>
     readonly RecordShape _sumShape = shape.Kind == DetectorKind.Analog ? shape with { Scale = 1, Offset = 0 } : shape;
+    readonly ShotPlaces _places = new(allShots);
     readonly ScanPoints _points = new(settings, allShots);
     readonly Dictionary<(string, ShotKind, int), int> _recorded = [];
     readonly Dictionary<(string, ShotKind, int), GroupSums> _groups = [];
@@ -63,13 +64,13 @@ sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector
     void AddShot(ShotInfo info, ReadOnlySpan<int> codes)
     {
         int low = System.Numerics.Tensors.TensorPrimitives.Min(codes), high = System.Numerics.Tensors.TensorPrimitives.Max(codes);
-        if (Kept(info, low, high)) Group(info).Add(codes, Probe(info), Ablation(info), info.DetuningReadback);
+        if (Kept(info, low, high)) Group(info).Add(codes, Readings(info));
     }
 
     void AddShot(ShotInfo info, ReadOnlySpan<double> values)
     {
         double low = System.Numerics.Tensors.TensorPrimitives.Min(values), high = System.Numerics.Tensors.TensorPrimitives.Max(values);
-        if (Kept(info, low, high)) Group(info).Add(values, Probe(info), Ablation(info), info.DetuningReadback);
+        if (Kept(info, low, high)) Group(info).Add(values, Readings(info));
     }
 
     /// <summary>Analog shots in volts, less their own baseline.</summary>
@@ -95,7 +96,7 @@ sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector
             return;
         }
         GroupSums group = Group(info);
-        group.Add(record.Volts, Probe(info), Ablation(info), info.DetuningReadback);
+        group.Add(record.Volts, Readings(info));
         group.BaselineVariance += record.BaselineVariance;
         _transfer?.Add(info, record.Volts);
     }
@@ -141,8 +142,8 @@ sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector
         return Math.Clamp(_recorded.GetValueOrDefault(Key(info)) / FewestBlocks, 1, settings.ShotsPerBlock);
     }
 
-    double Probe(ShotInfo info) => info.ProbeMonitor - detector.ProbeMonitorZero.Value;
-    double Ablation(ShotInfo info) => info.AblationMonitor - detector.AblationMonitorZero.Value;
+    ShotReadings Readings(ShotInfo info) =>
+        new(info.ProbeMonitor - detector.ProbeMonitorZero.Value, info.AblationMonitor - detector.AblationMonitorZero.Value, info.DetuningReadback, _places.Of(info));
 
     public BinnedRun Finish(double plausibleCounts)
     {
@@ -150,11 +151,12 @@ sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector
         JudgeEnd(plausibleCounts);
         JudgeEmptyRecords(plausibleCounts);
         if (_transfer?.Remark() is { } line) _remarks.Add(line);
+        (int first, int last) = (_groups.Values.Select(g => g.First).DefaultIfEmpty().Min(), _groups.Values.Select(g => g.Last).DefaultIfEmpty().Max());
         return new BinnedRun
         {
             DetectorKind = shape.Kind,
             Axis = axis,
-            Groups = [.. _groups.Values.Select(g => g.ToGroup())
+            Groups = [.. _groups.Values.Select(g => g.ToGroup(first, last))
                 .OrderBy(g => g.Condition, StringComparer.Ordinal).ThenBy(g => g.Kind).ThenBy(g => g.Point)],
             ShotsRead = _read,
             Cuts = [.. _cuts.Select(c => new ShotCut(c.Key, c.Value))],
@@ -190,7 +192,7 @@ sealed class ReductionPass(RecordShape shape, SignalAxis axis, Detector detector
     void KeepEmpty(IReadOnlyList<ShotInfo> shots, double expected)
     {
         int[] nothing = new int[shape.Samples];
-        foreach (ShotInfo shot in shots) Group(shot).Add(nothing, Probe(shot), Ablation(shot), shot.DetuningReadback);
+        foreach (ShotInfo shot in shots) Group(shot).Add(nothing, Readings(shot));
         _remarks.Add(string.Create(CultureInfo.InvariantCulture,
             $"{shots.Count} {(shots.Count == 1 ? "record" : "records")} of {shots[0].Condition} without a single count kept: with about {expected:F1} steady counts expected in one, none is no sign of a missing trigger"));
     }

@@ -10,8 +10,10 @@ public sealed record SignalAxis
     /// <param name="edges">[bins + 1] ticks after the origin, rising.</param>
     /// <param name="points">[points] laser readings of a scan, Hz; null or empty: no scan.</param>
     /// <param name="light">[points] probe light at each point relative to its mean over the scan; null or empty: the same at all.</param>
+    /// <param name="order">[points] mean place of each point's shots in the run, -0.5 first to 0.5 last; null or empty: all in the middle.</param>
     /// <exception cref="ArgumentOutOfRangeException">A tick that is not positive, fewer than two edges, or edges that do not rise.</exception>
-    public SignalAxis(double originSeconds, double tickSeconds, IReadOnlyList<int> edges, IReadOnlyList<double>? points = null, IReadOnlyList<double>? light = null)
+    public SignalAxis(double originSeconds, double tickSeconds, IReadOnlyList<int> edges, IReadOnlyList<double>? points = null, IReadOnlyList<double>? light = null,
+        IReadOnlyList<double>? order = null)
     {
         if (!double.IsFinite(originSeconds)) throw new ArgumentOutOfRangeException(nameof(originSeconds), originSeconds, "must be finite");
         if (!(tickSeconds > 0) || !double.IsFinite(tickSeconds)) throw new ArgumentOutOfRangeException(nameof(tickSeconds), tickSeconds, "must be positive");
@@ -24,6 +26,8 @@ public sealed record SignalAxis
         Points = points ?? [];
         Light = light is { Count: > 0 } ? light : [.. Points.Select(_ => 1.0)];
         if (Light.Count != Points.Count) throw new ArgumentOutOfRangeException(nameof(light), Light.Count, $"must be one for each of {Points.Count} points");
+        Order = order is { Count: > 0 } ? order : [.. Points.Select(_ => 0.0)];
+        if (Order.Count != Points.Count) throw new ArgumentOutOfRangeException(nameof(order), Order.Count, $"must be one for each of {Points.Count} points");
     }
 
     public double OriginSeconds { get; }
@@ -35,6 +39,9 @@ public sealed record SignalAxis
 
     /// <summary>[points] probe light at each point relative to its mean over the scan.</summary>
     public IReadOnlyList<double> Light { get; }
+
+    /// <summary>[points] mean place of each point's shots in the run, -0.5 first to 0.5 last.</summary>
+    public IReadOnlyList<double> Order { get; }
 
     /// <summary>Number of time bins.</summary>
     public int TimeBins => Edges.Count - 1;

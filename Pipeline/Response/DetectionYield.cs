@@ -12,10 +12,11 @@ public sealed class DetectionYield
     const int SpreadNodes = 24;
     static readonly GaussLegendreRule Across = new(-1, 1, 32);
     readonly Setup _setup;
+    readonly IReadOnlyList<SpectralLine> _lines;
 
     public DetectionYield(Setup setup)
     {
-        _setup = setup;
+        (_setup, _lines) = (setup, setup.Lines);
         Spread = DetuningSpread(setup.Probe.DetuningSpread.Value);
     }
 
@@ -27,7 +28,7 @@ public sealed class DetectionYield
     public double PhotonsAt(double speed)
     {
         double sum = 0, total = 0;
-        foreach (SpectralLine line in _setup.Species.Lines)
+        foreach (SpectralLine line in _lines)
         {
             total += line.Weight;
             foreach ((double shift, double weight) in Spread)
@@ -38,7 +39,7 @@ public sealed class DetectionYield
 
     /// <summary>How far pumping goes: the mean of x/n_max; 0 without a photon limit.</summary>
     public double PumpingAt(double speed) =>
-        _setup.Species.PhotonLimit is { } limit ? Exposure(speed, -_setup.Species.Lines[0].OffsetHz) / limit.Value : 0;
+        _setup.Species.PhotonLimit is { } limit ? Exposure(speed, -_lines[0].OffsetHz) / limit.Value : 0;
 
     /// <summary>Nodes and weights of what spreads the detuning, Hz.</summary>
     public (double Shift, double Weight)[] Spread { get; }

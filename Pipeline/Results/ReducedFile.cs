@@ -36,6 +36,7 @@ static class ReducedFile
         tree.Dataset("block_probe_monitor_v", group.BlockProbeMonitor);
         tree.Dataset("block_ablation_monitor_v", group.BlockAblationMonitor);
         tree.Dataset("point_and_detuning_hz", new[] { group.Point, group.Detuning });
+        tree.Dataset("order_in_run", new[] { group.Order });
         tree.Dataset("baseline_variance_v2", new[] { group.BaselineVariance });
         tree.Dataset("full_sum", group.FullSum);
     }
@@ -78,7 +79,7 @@ static class ReducedFile
         double[] point = file.ReadNumbers($"{at}/point_and_detuning_hz");
         return new ShotGroup
         {
-            Condition = condition, Kind = kind, Point = (int)point[0], Detuning = point[1], BlockShots = shots,
+            Condition = condition, Kind = kind, Point = (int)point[0], Detuning = point[1], Order = file.ReadNumbers($"{at}/order_in_run")[0], BlockShots = shots,
             BlockSums = [.. Enumerable.Range(0, shots.Length).Select(b => sums[(b * bins)..((b + 1) * bins)])],
             BlockProbeMonitor = file.ReadNumbers($"{at}/block_probe_monitor_v"),
             BlockAblationMonitor = file.ReadNumbers($"{at}/block_ablation_monitor_v"),

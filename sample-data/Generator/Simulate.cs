@@ -42,6 +42,12 @@ public sealed record RunPlan
     public double Decay { get; init; }
     /// <summary>Laser frequencies of a scan, one after the other over the run, Hz from the line; empty: the laser stays on the line.</summary>
     public double[] Scan { get; init; } = [];
+    /// <summary>The scan goes up, and then down again.</summary>
+    public bool UpDown { get; init; }
+    /// <summary>Points on the way down have numbers of their own.</summary>
+    public bool PassesApart { get; init; }
+    /// <summary>The laser moves up against its reading by this much over the run, Hz.</summary>
+    public double AxisDrift { get; init; }
     /// <summary>Shot numbers that go wrong.</summary>
     public IReadOnlyDictionary<int, Mishap> Mishaps { get; init; } = new Dictionary<int, Mishap>();
 }
@@ -76,16 +82,16 @@ public static class Simulate
         Mishap mishap = plan.Mishaps.GetValueOrDefault(number);
         double power = lit ? 1 + 0.03 * Math.Sin(2 * Math.PI * progress) : 0;
         double yield = fired ? Math.Exp(YieldScatter * draw.Normal() - 0.5 * YieldScatter * YieldScatter) * (1 - plan.Decay * progress) : 0;
-        int point = (int)(progress * plan.Scan.Length);
+        int passed = (int)(progress * plan.Scan.Length * (plan.UpDown ? 2 : 1)), point = passed < plan.Scan.Length ? passed : 2 * plan.Scan.Length - 1 - passed;
         double detuning = scene.LaserJitter * draw.Normal() + (mishap == Mishap.Unlocked ? 450e6 : 0) + (plan.Scan.Length > 0 ? plan.Scan[point] : 0);
         var times = new List<double>();
-        if (lit && fired) Molecules(scene, beam, draw, condition == "on", yield, detuning, power, times);
+        if (lit && fired) Molecules(scene, beam, draw, condition == "on", yield, detuning + plan.AxisDrift * (progress - 0.5), power, times);
         double span = plan.Samples * plan.Step;
         Steady(draw, (scene.ScatterRate * power + scene.DarkRate) * span, plan.Start, span, times);
         if (fired) for (int f = 0; f < scene.FlashCounts.Length; f++) Flash(draw, scene.FlashCounts[f] * yield, scene.FlashTimes[f], times);
         short[] counts = mishap == Mishap.NoTrigger ? new short[plan.Samples] : Record(scene, plan, times);
         return new Shot(number, kind, condition, scene.ProbeMonitorZero + power + (lit ? ProbeNoise : 0.002) * draw.Normal(),
-            scene.AblationMonitorZero + yield * (1 + AblationNoise * draw.Normal()), detuning + scene.AxisZero + 0.2e6 * draw.Normal(), counts) { Point = point };
+            scene.AblationMonitorZero + yield * (1 + AblationNoise * draw.Normal()), detuning + scene.AxisZero + 0.2e6 * draw.Normal(), counts) { Point = plan.PassesApart ? passed : point };
     }
 
     static void Molecules(Scene scene, Beam beam, Draw draw, bool on, double yield, double detuning, double power, List<double> times)
