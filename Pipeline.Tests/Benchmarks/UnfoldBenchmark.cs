@@ -19,6 +19,8 @@ public class UnfoldBenchmark(ITestOutputHelper output)
         var problem = new UnfoldProblem(Replicas);
         (UnfoldedSpectrum fit, Refitted[] replicas) = problem.Solve();
         Assert.Null(fit.Doubt);
+        Refitted[] alone = [.. problem.Replicas.Windows.Select(w => fit.Refit(w, problem.Response))];
+        for (int r = 0; r < Replicas; r++) Assert.Equal(alone[r].Molecules, replicas[r].Molecules); // to the last bit, on one thread or many
         Stopwatches own = Stopwatches.Measure("arrivals: fit, smoothing, replicas, moments", () => problem.Solve(), 21, 10);
         Stopwatches main = Stopwatches.Measure("  of this fit and smoothing", () => new UnfoldedEstimator().Fit(problem.Main, problem.Response), 21);
         string folder = Directory.CreateTempSubdirectory("arrivals-benchmark").FullName;
