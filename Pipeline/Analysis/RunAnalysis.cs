@@ -17,7 +17,7 @@ public sealed record ConditionPrediction(MoleculeList Molecules, bool RelativeOn
 public static class RunAnalysis
 {
     /// <summary>Numerical behaviour of the program: raised whenever the same input may give other numbers.</summary>
-    public const int NumericalVersion = 2;
+    public const int NumericalVersion = 3;
 
     /// <summary>Names of all modes of measurement.</summary>
     public static IReadOnlyList<string> Modes { get; } = [.. ResponseModes.All.Select(m => m.Name), TransverseFitter.Mode];
