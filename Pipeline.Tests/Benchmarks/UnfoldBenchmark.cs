@@ -38,7 +38,8 @@ public class UnfoldBenchmark(ITestOutputHelper output)
         }
     }
 
-    /// <summary>Both are exact methods of the active set for one strictly convex problem: what differs is rounding, through normal equations here.</summary>
+    /// <summary>Both are exact methods of the active set for one strictly convex problem: what differs is rounding, 1e-14 where measured.
+    /// One weight of 400 changed by 1e-4 makes 6e-7.</summary>
     void Compare(Refitted[] replicas, string path, string way)
     {
         ReadOnlySpan<double> theirs = System.Runtime.InteropServices.MemoryMarshal.Cast<byte, double>(File.ReadAllBytes(path));
@@ -48,6 +49,6 @@ public class UnfoldBenchmark(ITestOutputHelper output)
             for (int c = 0; c < UnfoldProblem.Cells; c++)
                 worst = Math.Max(worst, Math.Abs(replicas[r].Molecules[c] - theirs[r * UnfoldProblem.Cells + c]) / replicas[r].Molecules.Max());
         output.WriteLine($"{way}: largest difference of a cell {worst:E1} of the replica's largest");
-        Assert.InRange(worst, 0, 1e-6);
+        Assert.InRange(worst, 0, 1e-9);
     }
 }
