@@ -5,7 +5,7 @@ namespace Pipeline.Fitting;
 
 /// <summary>Minimises deviance + priors + x^T P x over molecules &gt;= 0 and free amplitudes of causes.</summary>
 /// <remarks>Fisher scoring: each round is a non-negative quadratic problem with the weights of the last means; the fixed point is the
-/// penalised maximum of the likelihood. Bins with variance beyond Poisson count by their chi-square.</remarks>
+/// penalised maximum of the likelihood. Analog bins count by their chi-square.</remarks>
 sealed class PenalisedFit
 {
     const int MostRounds = 40;
@@ -103,8 +103,9 @@ sealed class PenalisedFit
         for (int i = 0; i < means.Length; i++)
         {
             double d = window.Total[i] - means[i];
-            sum += window.TotalVariance is null && window.ExtraVariance[i] == 0
-                ? PoissonDeviance.Of(window.Total[i], Math.Max(means[i], 1e-3))
+            // counts with variance beyond Poisson: the deviance whose slope is (total - mean) / (mean + extra), as the steps have it
+            sum += window.TotalVariance is null
+                ? PoissonDeviance.Of(window.Total[i] + window.ExtraVariance[i], Math.Max(means[i], 1e-3) + window.ExtraVariance[i])
                 : d * d / window.Variance(i, means[i]);
         }
         return sum;
