@@ -39,7 +39,7 @@ public class AxisDriftTests
         Assert.Equal(expected, plain.Mean.Value - stated.Mean.Value, 0.05 * expected);
         Assert.Equal(Fit(Made(0, Once), 0).Mean.Value, stated.Mean.Value, 0.02);
         Assert.Equal(-expected, stated.Mean.Budget.Single(b => b.Cause == "axis drift").Shift, 0.1 * expected);
-        Assert.Contains(plain.Remarks, r => r.Contains("correlate by 0.", StringComparison.Ordinal) && r.Contains("no axis_drift is stated", StringComparison.Ordinal));
+        Assert.Contains(plain.Remarks, r => r.Contains("correlate by 1.00", StringComparison.Ordinal) && r.Contains("no axis_drift is stated", StringComparison.Ordinal));
         Assert.Contains(stated.Remarks, r => r.Contains("stands in the budget", StringComparison.Ordinal));
         Assert.DoesNotContain(plain.Remarks, r => r.Contains("up and down", StringComparison.Ordinal));
     }

@@ -39,7 +39,7 @@ static class ScanDrift
     static double Tilt(SignalAxis axis)
     {
         double middle = axis.Points.Average(), order = axis.Order.Average(), square = axis.Points.Average(p => (p - middle) * (p - middle));
-        return square == 0 ? 0 : axis.Points.Zip(axis.Order, (p, o) => (p - middle) * (o - order)).Average() / Math.Sqrt(square / 12);
+        return square == 0 ? 0 : Math.Clamp(axis.Points.Zip(axis.Order, (p, o) => (p - middle) * (o - order)).Average() / Math.Sqrt(square / 12), -1, 1);
     }
 
     /// <summary>[points] whether each belongs to the later half; null where halves do not both cover the readings.</summary>
