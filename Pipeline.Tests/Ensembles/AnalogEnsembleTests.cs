@@ -35,7 +35,7 @@ public class AnalogEnsembleTests(ITestOutputHelper output)
         };
         Truth truth = Truth.Of(scene, beam, false, setup.CaptureSpeed, 5);
         var table = new PullTable(output, "analog");
-        for (int k = 0; k < MadeShots.Runs; k++)
+        for (int k = 0; k < MadeShots.Runs / 2; k++)
         {
             BinnedRun run = AnalogTraces.Reduce(Simulate.Run(scene, beam, plan, 16_000 + k), plan, k, setup, settings);
             Assert.Empty(run.Cuts);
