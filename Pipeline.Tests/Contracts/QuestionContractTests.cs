@@ -16,7 +16,14 @@ public class QuestionContractTests
     static readonly VelocityGrid Grid = new(20, 300, 4);
     static readonly FitSettings Fit = new() { FromSeconds = 1.5e-3, VelocityFrom = 20, VelocityTo = 300, VelocityStep = 4 };
 
-    public static TheoryData<string> All => [.. Questions.All.Select(q => q.Name)];
+    public static TheoryData<string> All => ["rate", "arrival time", "shape"];
+
+    [Fact]
+    public void Concerns_ArrivalTimes_LeavesOutTheQuestionOfScans()
+    {
+        ComparisonCase drawn = Draw(new MathNet.Numerics.Random.Xoshiro256StarStar(1, threadSafe: false), 1, 1, shots: 2, blocks: 2);
+        Assert.Equal(["rate", "arrival time", "shape"], Questions.All.Where(q => q.Concerns(drawn)).Select(q => q.Name));
+    }
 
     static Setup Setup => TestSetups.OneMetre(new InstantEmission { Delay = new(1e-4) }, 20, null);
 

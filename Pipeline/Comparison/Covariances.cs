@@ -6,14 +6,11 @@ namespace Pipeline.Comparison;
 static class Covariances
 {
     /// <summary>diag(variance) + sum of outer products.</summary>
-    public static Matrix<double> Of(double[] variance, IEnumerable<double[]> causes)
+    public static Matrix<double> Of(double[] variance, IReadOnlyCollection<double[]> causes)
     {
-        Matrix<double> sum = Matrix<double>.Build.DenseOfDiagonalArray(variance);
-        foreach (double[] cause in causes)
-        {
-            Vector<double> v = Vector<double>.Build.DenseOfArray(cause);
-            sum += v.OuterProduct(v);
-        }
-        return sum;
+        Matrix<double> independent = Matrix<double>.Build.DenseOfDiagonalArray(variance);
+        if (causes.Count == 0) return independent;
+        Matrix<double> columns = Matrix<double>.Build.DenseOfColumnArrays(causes);
+        return independent + columns.TransposeAndMultiply(columns);
     }
 }

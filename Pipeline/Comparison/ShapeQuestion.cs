@@ -46,7 +46,7 @@ sealed class ShapeQuestion : IQuestion
     };
 
     static Matrix<double> Covariance(ComparisonCase both, double rate) => both.DataCovariance(rate) + rate * rate * both.SimulationCovariance
-        + Covariances.Of(new double[both.Bins], both.Nuisances.Select(n => n.Vector.Select(x => rate * x).ToArray()));
+        + Covariances.Of(new double[both.Bins], [.. both.Nuisances.Select(n => n.Vector.Select(x => rate * x).ToArray())]);
 
     /// <summary>Noncentrality of a stretch that matters, with the rate profiled.</summary>
     static double SeenStretch(ComparisonCase both, Matrix<double> weight, Vector<double> predicted, double rate)

@@ -13,25 +13,26 @@ sealed class MoleculeScan : IMoleculeResponse
 {
     /// <summary>Speeds that are told apart, m/s: none in a beam are beyond.</summary>
     const double Lowest = 0.5, Highest = 5000;
-    readonly double _along, _across;
+    readonly double _along, _across, _zero;
     readonly int _timeBins;
     readonly double[] _points;
     readonly ScanCounts _counts;
     readonly TimeShares _times;
 
-    public MoleculeScan(Setup setup, SignalAxis axis, TickBins ticks, Crossings crossings)
+    public MoleculeScan(Setup setup, SignalAxis axis, TickBins ticks, ScanTables tables, Crossings crossings)
     {
         (double sin, double cos) = Math.SinCos(setup.Probe.Angle.Value);
-        (_along, _across, _timeBins) = (cos / setup.Species.Wavelength.Value, sin / setup.Species.Wavelength.Value, axis.TimeBins);
+        (_along, _across) = (cos / setup.Species.Wavelength.Value, sin / setup.Species.Wavelength.Value);
+        (_zero, _timeBins) = (setup.Probe.AxisZero.Value, axis.TimeBins);
         _points = new double[axis.Points.Count];
         _times = new TimeShares(setup, ticks);
         (double slow, double fast, double low, double high) = (Highest, Lowest, double.PositiveInfinity, double.NegativeInfinity);
         for (int k = 0; k < crossings.Count; k++)
         {
-            double speed = Math.Clamp(crossings.Speed[k], Lowest, Highest), shift = Shift(crossings, k);
+            double speed = Math.Clamp(crossings.Speed[k], Lowest, Highest), shift = Reading(crossings, k);
             (slow, fast, low, high) = (Math.Min(slow, speed), Math.Max(fast, speed), Math.Min(low, shift), Math.Max(high, shift));
         }
-        _counts = new ScanCounts(setup, axis, (slow, fast), (low, high));
+        _counts = tables.For(setup, (slow, fast), (low, high));
     }
 
     public int Room => _points.Length * _times.Room;
@@ -41,10 +42,11 @@ sealed class MoleculeScan : IMoleculeResponse
         footprint.Clear();
         _times.Fill(crossings.Time[k], crossings.Speed[k], pumping: 0);
         if (_times.Count == 0) return;
-        _counts.Fill(crossings.Speed[k], Shift(crossings, k), _points);
+        _counts.Fill(crossings.Speed[k], Reading(crossings, k), _points);
         for (int p = 0; p < _points.Length; p++)
             for (int n = 0; n < _times.Count; n++) footprint.Add(p * _timeBins + _times.Bin(n), _points[p] * _times.Share(n), _points[p]);
     }
 
-    double Shift(Crossings crossings, int k) => crossings.Speed[k] * _along + crossings.Across[k] * _across;
+    /// <summary>Of the laser, where the molecule sees it on the line centroid, Hz.</summary>
+    double Reading(Crossings crossings, int k) => _zero + crossings.Speed[k] * _along + crossings.Across[k] * _across;
 }

@@ -12,11 +12,13 @@ public sealed class PredictionFold
     readonly SignalAxis _axis;
     readonly VelocityGrid _grid;
     readonly TickBins _ticks;
+    readonly ScanTables _tables;
 
     /// <param name="list">Molecules.</param>
     /// <param name="axis">Bins of the signal.</param>
     /// <param name="grid">Cells for the picture of the speeds.</param>
-    public PredictionFold(MoleculeList list, SignalAxis axis, VelocityGrid grid) => (_list, _axis, _grid, _ticks) = (list, axis, grid, new TickBins(axis));
+    public PredictionFold(MoleculeList list, SignalAxis axis, VelocityGrid grid) =>
+        (_list, _axis, _grid, _ticks, _tables) = (axis.Points.Count > 0 ? list.BySpeed() : list, axis, grid, new TickBins(axis), new ScanTables(axis));
 
     /// <summary>Whether predictions fold differently in both setups: how and when molecules left does not matter, for they come with their times.</summary>
     public static bool TellsApart(Setup a, Setup b) =>
@@ -85,7 +87,7 @@ public sealed class PredictionFold
         if (!(crossings.Weight.Sum() > 0))
             throw new DataFaultException("prediction", $"none of {_list.Count} molecules inside the acceptance at the probe",
                 "molecules that reach the probe", "check plane, units and acceptance");
-        return (crossings, _axis.Points.Count > 0 ? new MoleculeScan(setup, _axis, _ticks, crossings) : new MoleculeArrival(setup, _ticks));
+        return (crossings, _axis.Points.Count > 0 ? new MoleculeScan(setup, _axis, _ticks, _tables, crossings) : new MoleculeArrival(setup, _ticks));
     }
 
     FoldedPrediction Summary(Crossings crossings, double capture, double[] signal, double[] variance)
