@@ -16,7 +16,14 @@ public class QuestionContractTests
     static readonly VelocityGrid Grid = new(20, 300, 4);
     static readonly FitSettings Fit = new() { FromSeconds = 1.5e-3, VelocityFrom = 20, VelocityTo = 300, VelocityStep = 4 };
 
-    public static TheoryData<string> All => [.. Questions.All.Select(q => q.Name)];
+    public static TheoryData<string> All => ["rate", "arrival time", "shape"];
+
+    [Fact]
+    public void Concerns_ArrivalTimes_LeavesOutTheQuestionOfScans()
+    {
+        ComparisonCase drawn = Draw(new MathNet.Numerics.Random.Xoshiro256StarStar(1, threadSafe: false), 1, 1, shots: 2, blocks: 2);
+        Assert.Equal(["rate", "arrival time", "shape"], Questions.All.Where(q => q.Concerns(drawn)).Select(q => q.Name));
+    }
 
     static Setup Setup => TestSetups.OneMetre(new InstantEmission { Delay = new(1e-4) }, 20, null);
 
@@ -62,7 +69,7 @@ public class QuestionContractTests
         var made = new MadeUpRun();
         NetSignal signal = BackgroundModels.Named("steady").Subtract(made.Make(), "off", Setup.Detector);
         var outcome = new SpectrumOutcome { Signal = signal, Flight = "free", Spectra = [], Below = new BelowCapture(24, 0, null), YieldScatter = 0, YieldFreedom = 1 };
-        var fault = Assert.Throws<DataFaultException>(() => new ComparisonCase(outcome, (s, t) => PredictionFold.Fold(late, s, made.Axis, Grid, t), Setup, Fit, new ComparisonSettings()));
+        var fault = Assert.Throws<DataFaultException>(() => new ComparisonCase(outcome, new PredictionFold(late, made.Axis, Grid), Setup, Fit, new ComparisonSettings()));
         Assert.Contains("no counts inside the fit window", fault.Fault.Found, StringComparison.Ordinal);
     }
 
@@ -76,14 +83,14 @@ public class QuestionContractTests
     {
         MoleculeList nature = Simulated(random, 200_000, 600), simulation = Simulated(random, 4000, 600);
         var made = new MadeUpRun();
-        double[] molecules = [.. PredictionFold.Fold(nature, Setup, made.Axis, Grid, stretch).Signal.Select(s => rate * s)];
+        double[] molecules = [.. new PredictionFold(nature, made.Axis, Grid).Fold(Setup, Stretch.OfTimes(stretch)).Signal.Select(s => rate * s)];
         BinnedRun run = new MadeUpRun { Molecules = molecules }.Make(shots, blocks, random);
         NetSignal signal = BackgroundModels.Named("steady").Subtract(run, "off", Setup.Detector);
         var outcome = new SpectrumOutcome
         {
             Signal = signal, Flight = "free", Spectra = [], Below = new BelowCapture(24, 0, null), YieldScatter = 0, YieldFreedom = 39,
         };
-        return new ComparisonCase(outcome, (s, t) => PredictionFold.Fold(simulation, s, made.Axis, Grid, t), Setup, Fit, new ComparisonSettings { RateMatters = 0.05 });
+        return new ComparisonCase(outcome, new PredictionFold(simulation, made.Axis, Grid), Setup, Fit, new ComparisonSettings { RateMatters = 0.05 });
     }
 
     static MoleculeList Simulated(Random random, int count, double number)

@@ -27,7 +27,7 @@ public class PredictionFoldTests
         }
         SignalAxis axis = AxisDesign.For(new RecordShape { Shots = 1, Samples = 3000, OriginSeconds = 0, TickSeconds = 10e-6, Kind = DetectorKind.Counting }, 0.02, 1e-4);
         var list = new MoleculeList(times, zeros, speeds, zeros, zeros, zeros, zeros, [.. Enumerable.Repeat(1.0, Count)], MoleculeWeighting.Crossings);
-        FoldedPrediction folded = PredictionFold.Fold(list, Setup, axis, Grid);
+        FoldedPrediction folded = new PredictionFold(list, axis, Grid).Fold(Setup);
         double[] matrix = new ArrivalResponse().Build(Setup, "off", axis, Grid).Fold(cells);
         double chi = 0;
         int bins = 0;
@@ -50,7 +50,7 @@ public class PredictionFoldTests
     {
         double[] zeros = new double[5];
         var list = new MoleculeList(zeros, zeros, [100, 110, 120, 130, 140], zeros, zeros, zeros, zeros, [1, 2, 3, 4, 5], MoleculeWeighting.Crossings);
-        Assert.Equal(4.0909, PredictionFold.Fold(list, Setup, new SignalAxis(0, 1e-4, [0, 500]), Grid).EffectiveSize, 4);
+        Assert.Equal(4.0909, new PredictionFold(list, new SignalAxis(0, 1e-4, [0, 500]), Grid).Fold(Setup).EffectiveSize, 4);
     }
 
     [Fact]
@@ -59,17 +59,17 @@ public class PredictionFoldTests
         Setup narrow = Setup with { Beamline = Setup.Beamline with { AcceptanceHalfWidthX = 1e-3 } };
         // 0.2 m/s across at 100 m/s along 1 m: 2 mm
         var list = new MoleculeList([0, 0], [0, 0], [100, 100], [0, 0], [0, 0], [0.05, 0.2], [0, 0], [1, 1], MoleculeWeighting.Crossings);
-        FoldedPrediction folded = PredictionFold.Fold(list, narrow, new SignalAxis(0, 1e-4, [0, 500]), Grid);
+        FoldedPrediction folded = new PredictionFold(list, new SignalAxis(0, 1e-4, [0, 500]), Grid).Fold(narrow);
         Assert.Equal((1, 1.0), (folded.Outside, folded.Molecules));
         var all = new MoleculeList([0], [0], [100], [0], [0], [0.2], [0], [1], MoleculeWeighting.Crossings);
-        Assert.Throws<DataFaultException>(() => PredictionFold.Fold(all, narrow, new SignalAxis(0, 1e-4, [0, 500]), Grid));
+        Assert.Throws<DataFaultException>(() => new PredictionFold(all, new SignalAxis(0, 1e-4, [0, 500]), Grid).Fold(narrow));
     }
 
     [Fact]
     public void Fold_SecondPlane_ArrivesAfterTheRestOfTheWay()
     {
         var list = new MoleculeList([2e-3], [0.25], [100], [0], [0], [0], [0], [1], MoleculeWeighting.Crossings);
-        double[] signal = PredictionFold.Fold(list, Setup, new SignalAxis(0, 1e-4, [.. Enumerable.Range(0, 200)]), Grid).Signal;
+        double[] signal = new PredictionFold(list, new SignalAxis(0, 1e-4, [.. Enumerable.Range(0, 200)]), Grid).Fold(Setup).Signal;
         // 2 ms + 0.75 m / 100 m/s = 9.5 ms; the light is thin, so all counts fall into the bins around that edge
         Assert.Equal(signal.Sum(), signal[94] + signal[95], 12);
     }

@@ -65,7 +65,7 @@ public class CouplingTests
         var speeds = Enumerable.Range(0, grid.Cells).SelectMany(c => Enumerable.Range(0, Each).Select(k => (Speed: grid.Edge(c) + grid.Step * (k + 0.5) / Each, Weight: molecules[c] / Each))).ToArray();
         double[] zero = new double[speeds.Length];
         var list = new MoleculeList(zero, zero, [.. speeds.Select(s => s.Speed)], zero, zero, zero, zero, [.. speeds.Select(s => s.Weight)], MoleculeWeighting.Crossings);
-        double[] direct = PredictionFold.Fold(list, setup, axis, grid).Signal;
+        double[] direct = new PredictionFold(list, axis, grid).Fold(setup).Signal;
         double peak = folded.Max();
         Assert.True(folded.Min() < -0.001 * peak);
         for (int i = 0; i < axis.Bins; i++) Assert.Equal(folded[i] / peak, direct[i] / peak, 0.01);

@@ -67,14 +67,12 @@ public static class RunAnalysis
             }
             var both = new ComparisonCase(fit, Folding(prediction, fit, settings), setup, settings.Fit, settings.Comparison);
             conditions.Add(new ConditionOutcome(fit, both.Folded, prediction.RelativeOnly));
-            answers.AddRange(Questions.All.Where(q => !(q.NeedsAbsolute && prediction.RelativeOnly)).Select(q => q.Ask(both)));
+            answers.AddRange(Questions.All.Where(q => q.Concerns(both) && !(q.NeedsAbsolute && prediction.RelativeOnly)).Select(q => q.Ask(both)));
         }
-        return (conditions, Judge.Decide(answers, settings.Comparison.Level, fits.Any(f => f.Signal.Axis.Points.Count > 0) ? "predictions are not folded into laser scans" : "no prediction belongs to this run"));
+        bool across = fits.Any(f => f.Others.Any(o => o.Name == TransverseFitter.FrequencyZero));
+        return (conditions, Judge.Decide(answers, settings.Comparison.Level, across ? "a scan across the beam is not compared: it finds the zero of the frequency axis" : "no prediction belongs to this run"));
     }
 
-    static Func<Setup, double, FoldedPrediction> Folding(ConditionPrediction prediction, SpectrumOutcome fit, AnalysisSettings settings)
-    {
-        var grid = new VelocityGrid(settings.Fit.VelocityFrom, settings.Fit.VelocityTo, settings.Fit.VelocityStep);
-        return (setup, stretch) => PredictionFold.Fold(prediction.Molecules, setup, fit.Signal.Axis, grid, stretch);
-    }
+    static PredictionFold Folding(ConditionPrediction prediction, SpectrumOutcome fit, AnalysisSettings settings) =>
+        new(prediction.Molecules, fit.Signal.Axis, new VelocityGrid(settings.Fit.VelocityFrom, settings.Fit.VelocityTo, settings.Fit.VelocityStep));
 }

@@ -1,8 +1,8 @@
+using MathNet.Numerics.LinearAlgebra;
 using Pipeline.Apparatus;
 using Pipeline.Backgrounds;
 using Pipeline.Fitting;
 using Pipeline.Predictions;
-using Pipeline.Response;
 
 namespace Pipeline.Comparison;
 
@@ -10,49 +10,44 @@ namespace Pipeline.Comparison;
 /// unit: counts summed over all signal shots, as recorded.</summary>
 public sealed class ComparisonCase
 {
-    /// <summary>Merged bins hold equal shares of the predicted signal, at least so many counts each, and are not more than this.</summary>
-    const int MostBins = 30, CountsEach = 25, FewestBins = 4;
-
     /// <param name="outcome">The data.</param>
-    /// <param name="fold">The prediction for a setup and a stretch of all arrival times.</param>
+    /// <param name="fold">The prediction in the bins of the data.</param>
     /// <param name="setup">The apparatus.</param>
     /// <param name="fit">The window.</param>
     /// <param name="settings">What matters.</param>
-    public ComparisonCase(SpectrumOutcome outcome, Func<Setup, double, FoldedPrediction> fold, Setup setup, FitSettings fit, ComparisonSettings settings)
+    public ComparisonCase(SpectrumOutcome outcome, PredictionFold fold, Setup setup, FitSettings fit, ComparisonSettings settings)
     {
         NetSignal signal = outcome.Signal;
         (Condition, Settings, YieldScatter, YieldFreedom) = (signal.Condition, settings, outcome.YieldScatter, outcome.YieldFreedom);
+        Scanned = signal.Axis.Points.Count > 0;
         var window = new FitWindow(signal, fit.FromSeconds, fit.ToSeconds);
-        Folded = fold(setup, 1);
+        Folded = fold.Fold(setup);
         double[] counts = InWindow(window, Folded.Signal);
         if (!(counts.Sum() > 0))
             throw new DataFaultException($"prediction for condition \"{Condition}\"", "no counts inside the fit window", "a prediction that arrives in the window",
                 "check the times and the plane of the prediction, and fit_from and fit_to in night.toml");
-        int[] edges = Merge(counts);
-        double[] Merged(double[] bins) => [.. edges.Skip(1).Select((to, g) => bins.AsSpan(edges[g], to - edges[g]).ToArray().Sum())];
+        int timeBins = Scanned ? signal.Axis.TimeBins : 1;
+        int[] groups = MergedBins.Of(counts, timeBins);
+        double[] Merged(IReadOnlyList<double> bins)
+        {
+            var sums = new double[groups.Max() + 1];
+            for (int i = 0; i < bins.Count; i++) sums[groups[i]] += bins[i];
+            return sums;
+        }
         Total = Merged(window.Total);
         Background = Merged(window.Background);
         ExtraVariance = Merged(window.ExtraVariance);
         Overdispersed = window.TotalVariance is { } v ? Merged(v) : null;
         Predicted = Merged(counts);
-        PredictedVariance = Merged([.. Enumerable.Range(0, window.Count).Select(i =>
-            window.Exposure[i] * window.Exposure[i] * Folded.Variance[window.First + i])]);
+        SimulationCovariance = Simulation(fold, setup, window, groups, signal.Axis.Bins);
         Causes = [.. window.Causes.Select(Merged)];
-        double h = 0.25 * settings.TimeMatters;
-        double[] later = InWindow(window, fold(setup, 1 + h).Signal), earlier = InWindow(window, fold(setup, 1 - h).Signal);
-        Stretch = Merged([.. later.Zip(earlier, (a, b) => (a - b) / (2 * h))]);
-        Nuisances = [.. Apparatus.Nuisances.Of(setup).Select(n => (n.Name, Merged(Moved(n))))
-            .Where(n => n.Item2.Any(x => x != 0))];
+        YieldCauses = Scanned ? [.. PointYields(window, Folded.Signal, timeBins).Select(Merged)] : [];
+        double h = 0.25 * StretchMatters;
+        double[] more = Stretched(1 + h), less = Stretched(1 - h);
+        Stretch = Merged([.. more.Zip(less, (a, b) => (a - b) / (2 * h))]);
+        Nuisances = new MovedPredictions(setup, counts, s => InWindow(window, fold.Fold(s).Signal)).All(Merged);
 
-        double[] Moved(Nuisance nuisance)
-        {
-            double[] up = InWindow(window, fold(nuisance.Shift(setup, 1), 1).Signal);
-            double[] down = InWindow(window, fold(nuisance.Shift(setup, -1), 1).Signal);
-            double[] odd = [.. up.Zip(down, (a, b) => 0.5 * (a - b))];
-            double[] even = [.. Enumerable.Range(0, counts.Length).Select(i => 0.5 * (up[i] + down[i]) - counts[i])];
-            // a probe at right angles moves the rate the same way whichever way it is turned: then the even part is what counts
-            return odd.Sum(x => x * x) >= even.Sum(x => x * x) ? odd : even;
-        }
+        double[] Stretched(double by) => InWindow(window, fold.Fold(setup, Scanned ? Predictions.Stretch.OfVelocities(by) : Predictions.Stretch.OfTimes(by)).Signal);
     }
 
     public string Condition { get; }
@@ -67,13 +62,22 @@ public sealed class ComparisonCase
     /// <summary>Variance of the totals where they are not Poisson counts; else null.</summary>
     public double[]? Overdispersed { get; }
     public double[] Predicted { get; }
-    public double[] PredictedVariance { get; }
+    /// <summary>[bins, bins] of <see cref="Predicted"/>, from the finite number of simulated molecules.</summary>
+    public Matrix<double> SimulationCovariance { get; }
     /// <summary>[causes][bins] of the background.</summary>
     public double[][] Causes { get; }
-    /// <summary>Change of the prediction for a relative stretch of all arrival times by one.</summary>
+    /// <summary>[points][bins] of a scan: what the scatter of the yield between shots moves at each point, apart from all others, where the rate is as
+    /// predicted. Empty elsewhere, for all arrival times of a shot move together.</summary>
+    public double[][] YieldCauses { get; }
+    /// <summary>Whether the laser was scanned.</summary>
+    public bool Scanned { get; }
+    /// <summary>Change of the prediction for a relative stretch by one: of all velocities in a scan, else of all arrival times.</summary>
     public double[] Stretch { get; }
     /// <summary>Change of the prediction for one standard deviation of each nuisance.</summary>
     public IReadOnlyList<(string Name, double[] Vector)> Nuisances { get; }
+
+    /// <summary>Relative <see cref="Stretch"/> that matters.</summary>
+    public double StretchMatters => Scanned ? Settings.VelocityMatters : Settings.TimeMatters;
 
     public int Bins => Total.Length;
 
@@ -81,22 +85,33 @@ public sealed class ComparisonCase
     public double[] DataVariance(double rate) =>
         [.. Enumerable.Range(0, Bins).Select(g => (Overdispersed?[g] ?? Math.Max(rate * Predicted[g] + Background[g], 1)) + ExtraVariance[g])];
 
+    /// <summary>Covariance of data where the prediction is scaled by <paramref name="rate"/>, apart from what moves the whole run alike.</summary>
+    public Matrix<double> DataCovariance(double rate) =>
+        Covariances.Of(DataVariance(rate), [.. Causes, .. YieldCauses.Select(c => c.Select(x => rate * x).ToArray())]);
+
     static double[] InWindow(FitWindow window, double[] perShot) =>
         [.. Enumerable.Range(0, window.Count).Select(i => window.Exposure[i] * perShot[window.First + i])];
 
-    /// <summary>Edges of merged bins, chosen on the prediction alone.</summary>
-    static int[] Merge(double[] predicted)
+    static Matrix<double> Simulation(PredictionFold fold, Setup setup, FitWindow window, int[] groups, int bins)
     {
-        double all = predicted.Sum();
-        int groups = Math.Clamp((int)(all / CountsEach), FewestBins, MostBins);
-        var edges = new List<int> { 0 };
-        double sum = 0;
-        for (int i = 0; i < predicted.Length - 1; i++)
+        int[] all = [.. Enumerable.Repeat(-1, bins)];
+        var exposure = new double[bins];
+        groups.CopyTo(all, window.First);
+        window.Exposure.CopyTo(exposure, window.First);
+        return Matrix<double>.Build.DenseOfArray(fold.Covariance(setup, all, exposure));
+    }
+
+    /// <summary>[points][bins] one standard deviation of the yield at each point.</summary>
+    /// <remarks>The scatter e of a point's mean yield, equal for all points, moves the sum of their signals S by e sqrt(sum S^2), which is known.</remarks>
+    IEnumerable<double[]> PointYields(FitWindow window, double[] perShot, int timeBins)
+    {
+        double[] points = [.. perShot.Chunk(timeBins).Select(times => times.Sum())];
+        double each = YieldScatter * points.Sum() / Math.Sqrt(points.Sum(s => s * s));
+        for (int p = 0; p < points.Length && each > 0; p++)
         {
-            sum += predicted[i];
-            if (sum >= all * edges.Count / groups && edges.Count < groups) edges.Add(i + 1);
+            var moved = new double[window.Count];
+            for (int i = p * timeBins; i < (p + 1) * timeBins; i++) moved[i] = each * window.Exposure[i] * perShot[i];
+            yield return moved;
         }
-        edges.Add(predicted.Length);
-        return [.. edges];
     }
 }

@@ -9,4 +9,6 @@ public sealed record ComparisonSettings
     public double RateMatters { get; init; } = 0.20;
     /// <summary>Relative difference in arrival time, the same for all molecules, that matters.</summary>
     public double TimeMatters { get; init; } = 0.05;
+    /// <summary>Relative difference in velocity, the same for all molecules, that matters.</summary>
+    public double VelocityMatters { get; init; } = 0.05;
 }

@@ -9,11 +9,14 @@ public interface IQuestion
     /// <summary>Whether it needs the number of molecules that the prediction states.</summary>
     bool NeedsAbsolute { get; }
 
+    /// <summary>Whether it has a meaning for what was measured.</summary>
+    bool Concerns(ComparisonCase both) => true;
+
     Answer Ask(ComparisonCase both);
 }
 
 /// <summary>Every question. To add one, write its file and add its line.</summary>
 public static class Questions
 {
-    public static IReadOnlyList<IQuestion> All { get; } = [new RateQuestion(), new ArrivalTimeQuestion(), new ShapeQuestion()];
+    public static IReadOnlyList<IQuestion> All { get; } = [new RateQuestion(), new ArrivalTimeQuestion(), new VelocityQuestion(), new ShapeQuestion()];
 }

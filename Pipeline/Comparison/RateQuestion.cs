@@ -14,7 +14,7 @@ sealed class RateQuestion : IQuestion
         double predicted = both.Predicted.Sum(), rate = (both.Total.Sum() - both.Background.Sum()) / predicted;
         double counting = both.DataVariance(Math.Max(rate, 0)).Sum() + both.Causes.Sum(c => Square(c.Sum()));
         double statistical = Math.Sqrt(counting / Square(predicted) + Square(rate * both.YieldScatter));
-        double simulation = Math.Abs(rate) * Math.Sqrt(both.PredictedVariance.Sum()) / predicted;
+        double simulation = Math.Abs(rate) * Math.Sqrt(both.SimulationCovariance.RowSums().Sum()) / predicted;
         double systematic = Math.Abs(rate) * Math.Sqrt(both.Nuisances.Sum(n => Square(n.Vector.Sum() / predicted)));
         double error = Math.Sqrt(Square(statistical) + Square(simulation) + Square(systematic)), matters = both.Settings.RateMatters;
         // few blocks of shots know their own scatter badly: Student's t with effective degrees of freedom

@@ -7,7 +7,7 @@ namespace Pipeline.Comparison;
 
 /// <summary>Chi-square of the whole signal at free rate, with the covariance of data, simulation and every common cause.</summary>
 /// <remarks>Merged bins hold 25 predicted counts or more, so the asymptotic distribution serves. "Would have shown" asks for 90 % power
-/// against a stretch of all arrival times by what matters.</remarks>
+/// against a stretch of all arrival times, or of all velocities in a scan, by what matters.</remarks>
 sealed class ShapeQuestion : IQuestion
 {
     const double Power = 0.9;
@@ -35,7 +35,7 @@ sealed class ShapeQuestion : IQuestion
             PValue = Tail.ChiSquare(chiSquare, freedom), WouldHaveShown = power >= Power,
             Finding = string.Create(CultureInfo.InvariantCulture, $"chi-square {chiSquare:F1} for {freedom} degrees of freedom at free rate"),
             WhatWouldDecide = string.Create(CultureInfo.InvariantCulture,
-                $"the chance to see arrivals {100 * both.Settings.TimeMatters:G3} % late is {100 * power:F0} %, {100 * Power:F0} % are asked for"),
+                $"the chance to see {(both.Scanned ? "velocities" : "arrivals")} {100 * both.StretchMatters:G3} % {(both.Scanned ? "high" : "late")} is {100 * power:F0} %, {100 * Power:F0} % are asked for"),
         };
     }
 
@@ -45,14 +45,13 @@ sealed class ShapeQuestion : IQuestion
         PValue = 1, WouldHaveShown = false, Finding = "all predicted counts fall into one bin, which has no shape", WhatWouldDecide = "finer bins would be needed",
     };
 
-    static Matrix<double> Covariance(ComparisonCase both, double rate) => Covariances.Of(
-        [.. both.DataVariance(rate).Zip(both.PredictedVariance, (d, s) => d + rate * rate * s)],
-        [.. both.Causes, .. both.Nuisances.Select(n => n.Vector.Select(x => rate * x).ToArray())]);
+    static Matrix<double> Covariance(ComparisonCase both, double rate) => both.DataCovariance(rate) + rate * rate * both.SimulationCovariance
+        + Covariances.Of(new double[both.Bins], [.. both.Nuisances.Select(n => n.Vector.Select(x => rate * x).ToArray())]);
 
     /// <summary>Noncentrality of a stretch that matters, with the rate profiled.</summary>
     static double SeenStretch(ComparisonCase both, Matrix<double> weight, Vector<double> predicted, double rate)
     {
-        Vector<double> stretch = rate * both.Settings.TimeMatters * Vector<double>.Build.DenseOfArray(both.Stretch);
+        Vector<double> stretch = rate * both.StretchMatters * Vector<double>.Build.DenseOfArray(both.Stretch);
         double cross = stretch * weight * predicted;
         // never negative but by rounding, after Cauchy and Schwarz
         return Math.Max(0, stretch * weight * stretch - cross * cross / (predicted * weight * predicted));

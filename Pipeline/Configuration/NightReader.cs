@@ -119,6 +119,7 @@ static class NightReader
         var settings = new ComparisonSettings
         {
             Level = Share("level", plain.Level), RateMatters = Share("rate_matters", plain.RateMatters), TimeMatters = Share("time_matters", plain.TimeMatters),
+            VelocityMatters = Share("velocity_matters", plain.VelocityMatters),
         };
         t.RefuseUnknown();
         return settings;

@@ -119,7 +119,7 @@ public sealed class RunWork
         var predictions = new Dictionary<string, ConditionPrediction>(StringComparer.Ordinal);
         var files = new List<InputFile>();
         foreach (string condition in run.Conditions)
-            if (!RunAnalysis.IsScan(_run.Rule.Mode) && RuleFor(condition) is { } rule)
+            if (_run.Rule.Mode != TransverseFitter.Mode && RuleFor(condition) is { } rule)
             {
                 string path = Path.Combine(_day.Path, rule.File);
                 MoleculeList molecules = MoleculeFiles.Read(path, _lab.MoleculeLayouts[rule.Layout], rule.Weighting);

@@ -39,4 +39,13 @@ public sealed class MoleculeList
     public double[] Weight { get; }
     public MoleculeWeighting Weighting { get; }
     public int Count => Time.Length;
+
+    /// <summary>The same molecules in the order of their speed: tables by speed are then read from end to end, several times as fast.</summary>
+    public MoleculeList BySpeed()
+    {
+        int[] order = [.. Enumerable.Range(0, Count)];
+        Array.Sort((double[])Vz.Clone(), order);
+        double[] Sorted(double[] column) => [.. order.Select(k => column[k])];
+        return new MoleculeList(Sorted(Time), Sorted(Z), Sorted(Vz), Sorted(X), Sorted(Y), Sorted(Vx), Sorted(Vy), Sorted(Weight), Weighting);
+    }
 }

@@ -133,7 +133,7 @@ public static class RunPage
         return Html.Of($"""
             <h2>Questions asked of data and prediction</h2>
             <div class="scroll"><table><tr><th>question</th><th class="n">measured</th><th class="n">predicted</th><th class="n">statistical</th><th class="n">systematic</th><th class="n">simulation</th><th class="n">p (Holm)</th><th>judgement</th></tr>{rows}</table></div>
-            <p class="note">Rate and arrival time are ratios of measured to predicted; shape is chi-square, beside its degrees of freedom.</p>
+            <p class="note">Rate, arrival time and velocity are ratios of measured to predicted; shape is chi-square, beside its degrees of freedom.</p>
             """);
     }
 
