@@ -48,15 +48,13 @@ public class DopplerEnsembleTests(ITestOutputHelper output)
                 string name = fit.Signal.Condition;
                 table.Add($"{name} number", fit.Number, Off * truth.Molecules, fit.Number.Statistical);
                 table.Add($"{name} mean velocity", fit.Mean, truth.MeanSpeed);
-                table.Add($"{name} spread", fit.Spread, truth.Spread);
+                Assert.NotNull(fit.Spread.NotDeterminedBecause);
                 Assert.InRange(fit.Number.Systematic / fit.Number.Value, 0.095, 0.108);
             }
             Quantity ratio = found.Single(f => f.Signal.Condition == "on").Others.Single(o => o.Name == "number over off").Quantity;
             Assert.InRange(ratio.Systematic / ratio.Value, 0, 0.005);
             table.Add("ratio", ratio, on.Molecules / off.Molecules);
         }
-        // short of the bar: the spread is quoted in 26 (off) and 14 (on) of 40 runs, those in which noise far from the beam happened to widen it: by 1.3
-        // and 0.9 of its errors
-        table.Check(("off spread", 1.28, 0.85, true), ("on spread", 0.94, 0.75, true));
+        table.Check();
     }
 }

@@ -72,7 +72,7 @@ sealed class EstimatorRun
             Choices = _fit.Choices,
             Number = _fit.Refusal is { } refusal ? Fitting.Quantity.NotDetermined(refusal) : Quantity(r => r.Moments.Number),
             Mean = Moment(m => m.Mean),
-            Spread = Moment(m => m.Spread),
+            Spread = _fit.NoSpread is { } none ? Fitting.Quantity.NotDetermined(none) : Moment(m => m.Spread),
         };
     }
 

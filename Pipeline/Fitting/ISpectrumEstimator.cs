@@ -27,6 +27,8 @@ abstract class FittedSpectrum
     public string? Doubt { get; init; }
     /// <summary>Why this estimator has no answer here; null where it has.</summary>
     public string? Refusal { get; init; }
+    /// <summary>Why the spread is not quoted although number and mean are; null where it is.</summary>
+    public string? NoSpread { get; init; }
     /// <summary>What was chosen or found, for the report.</summary>
     public required string Description { get; init; }
     /// <summary>[cells][cells] how a true spectrum appears; null where the estimator has none.</summary>

@@ -17,7 +17,7 @@ static class OtherQuantities
     public static IReadOnlyList<NamedQuantity> Of(EstimatorRun fit, EstimatorRun? shape, Setup setup, VelocityGrid grid, string? weak)
     {
         Quantity Of(EstimatorRun run, Func<Refitted, double> of) => weak is not null ? Quantity.NotDetermined(weak) : run.Quantity(of);
-        var temperature = new NamedQuantity("forward temperature", "K", Of(fit, r => setup.Species.Mass.Value * r.Moments.Spread * r.Moments.Spread / Codata.BoltzmannConstant));
+        var temperature = new NamedQuantity("forward temperature", "K", fit.Main.NoSpread is { } none ? Quantity.NotDetermined(none) : Of(fit, r => setup.Species.Mass.Value * r.Moments.Spread * r.Moments.Spread / Codata.BoltzmannConstant));
         if (shape is null || shape.Main.Doubt is not null) return [temperature];
         return
         [
