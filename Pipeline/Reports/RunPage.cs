@@ -105,7 +105,7 @@ public static class RunPage
         (string, string)[] key =
         [
             ("fit", $"{c.Fit.Spectra[0].Estimator} spectrum"), ("inner", "statistical"), ("outer", "statistical and systematic"),
-            .. c.Fit.Spectra.Skip(1).Select(s => ("other", $"{s.Estimator} fit")),
+            .. c.Fit.Spectra.Count > 1 ? [("other", string.Join(" and ", c.Fit.Spectra.Skip(1).Select(s => s.Estimator)))] : Array.Empty<(string, string)>(),
             .. c.Prediction is not null && c.Fit.Spectra[0].Resolution is not null ? [("prediction", "prediction, as this estimator would see it")] : Array.Empty<(string, string)>(),
         ];
         return Html.Of($"<h3>Velocity spectrum</h3>{ConditionFigures.Key(key)}{ConditionFigures.Spectrum(c, c.Fit.Below.CaptureSpeed)}");

@@ -52,7 +52,7 @@ public static class JointFitter
             {
                 Spectra = [.. runs.Select(r => r.ToSpectrum(signal, weak, part, start))], Below = below,
                 Others = [.. OtherQuantities.Of(runs[0], runs.FirstOrDefault(r => r.Name == "shape"), members[k].Setup, grid, weak), .. PulseQuantities(found)],
-                Remarks = [.. outcomes[k].Remarks, Told(members, yieldMayDiffer)],
+                Remarks = [.. outcomes[k].Remarks, .. members[k].Setup.Remarks, Told(members, yieldMayDiffer)],
             };
         }
         return outcomes;
