@@ -32,6 +32,9 @@ public class ScanQuestionTests
         }
     }
 
+    /// <summary>The scatter of the yield is stated, rather than taken from the run.</summary>
+    static Setup Stated => Setup with { Detector = Setup.Detector with { AblationMonitorNoise = YieldNoise * Math.Sqrt(ShotsEach) } };
+
     [Fact]
     public void Concerns_Scan_AsksForVelocityInsteadOfArrivalTime() =>
         Assert.Equal(["rate", "velocity", "shape"], Questions.All.Where(q => q.Concerns(Agreeing.Value[0])).Select(q => q.Name));
@@ -71,10 +74,10 @@ public class ScanQuestionTests
     {
         var random = new MathNet.Numerics.Random.Xoshiro256StarStar(seed, threadSafe: false);
         double[] molecules = [.. new PredictionFold(Nature, Axis, Grid).Fold(Setup, Stretch.OfVelocities(stretch)).Signal.Select(s => rate * s)];
-        return [.. Enumerable.Range(0, count).Select(_ => Draw(random, molecules))];
+        return [.. Enumerable.Range(0, count).Select(k => Draw(random, molecules, stated: k % 2 == 0))];
     }
 
-    static ComparisonCase Draw(Random random, double[] molecules)
+    static ComparisonCase Draw(Random random, double[] molecules, bool stated)
     {
         double[] yields = [.. molecules.Select(_ => Normal.Sample(random, 1, YieldNoise))];
         double[] totals = [.. molecules.Select((m, p) => (double)Poisson.Sample(random, ShotsEach * (m * yields[p] + BackgroundEach)))];
@@ -88,7 +91,7 @@ public class ScanQuestionTests
             Signal = signal, Flight = "free", Spectra = [], Below = new BelowCapture(24, 0, null), YieldFreedom = 10_000,
             YieldScatter = YieldNoise * Math.Sqrt(molecules.Sum(m => m * m)) / molecules.Sum(),
         };
-        return new ComparisonCase(outcome, new PredictionFold(Simulated(random, 3000), Axis, Grid), Setup, Fit, new ComparisonSettings());
+        return new ComparisonCase(outcome, new PredictionFold(Simulated(random, 3000), Axis, Grid), stated ? Stated : Setup, Fit, new ComparisonSettings());
     }
 
     static MoleculeList Simulated(Random random, int count)

@@ -41,7 +41,7 @@ public sealed class ComparisonCase
         Predicted = Merged(counts);
         SimulationCovariance = Simulation(fold, setup, window, groups, signal.Axis.Bins);
         Causes = [.. window.Causes.Select(Merged)];
-        YieldCauses = Scanned ? [.. PointYields(window, Folded.Signal, timeBins).Select(Merged)] : [];
+        YieldCauses = Scanned ? [.. PointYields.Of(window, Folded.Signal, timeBins, PointYields.Scatter(outcome, Folded.Signal, timeBins, setup.Detector)).Select(Merged)] : [];
         double h = 0.25 * StretchMatters;
         double[] more = Stretched(1 + h), less = Stretched(1 - h);
         Stretch = Merged([.. more.Zip(less, (a, b) => (a - b) / (2 * h))]);
@@ -99,19 +99,5 @@ public sealed class ComparisonCase
         groups.CopyTo(all, window.First);
         window.Exposure.CopyTo(exposure, window.First);
         return Matrix<double>.Build.DenseOfArray(fold.Covariance(setup, all, exposure));
-    }
-
-    /// <summary>[points][bins] one standard deviation of the yield at each point.</summary>
-    /// <remarks>The scatter e of a point's mean yield, equal for all points, moves the sum of their signals S by e sqrt(sum S^2), which is known.</remarks>
-    IEnumerable<double[]> PointYields(FitWindow window, double[] perShot, int timeBins)
-    {
-        double[] points = [.. perShot.Chunk(timeBins).Select(times => times.Sum())];
-        double each = YieldScatter * points.Sum() / Math.Sqrt(points.Sum(s => s * s));
-        for (int p = 0; p < points.Length && each > 0; p++)
-        {
-            var moved = new double[window.Count];
-            for (int i = p * timeBins; i < (p + 1) * timeBins; i++) moved[i] = each * window.Exposure[i] * perShot[i];
-            yield return moved;
-        }
     }
 }

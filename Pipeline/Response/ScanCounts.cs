@@ -17,7 +17,7 @@ sealed class ScanCounts
     readonly Setup _setup;
     readonly (double Low, double High) _speeds, _shifts;
     readonly double _slowest, _low, _step;
-    readonly double[][][] _tables;
+    readonly double[] _table;
     readonly int _rows, _columns;
 
     /// <param name="setup">The instrument.</param>
@@ -42,7 +42,9 @@ sealed class ScanCounts
         // without a limit counts go as 1/v exactly
         _rows = setup.Species.PhotonLimit is null ? 1 : (int)Math.Ceiling(Math.Log(speeds.High / speeds.Low) / LogStep) + 2;
         (int first, double[] kernel) = Kernel(setup);
-        _tables = [.. Enumerable.Range(0, levels).Select(l => Rows(setup with { Probe = setup.Probe.WithLight(dim + l * apart) }, _rows, _columns, first, kernel))];
+        _table = new double[levels * _rows * _columns];
+        for (int l = 0; l < levels; l++)
+            Rows(setup with { Probe = setup.Probe.WithLight(dim + l * apart) }, first, kernel, _table.AsSpan(l * _rows * _columns, _rows * _columns));
     }
 
     /// <summary>Whether the same table is right in another setup, as it is where only geometry, times or the zero of the axis differ.</summary>
@@ -59,25 +61,25 @@ sealed class ScanCounts
     public void Fill(double speed, double shift, Span<double> counts)
     {
         double at = _rows == 1 ? 0 : Math.Clamp(Math.Log(speed / _slowest) / LogStep, 0, _rows - 1.001);
-        int row = (int)at, next = Math.Min(row + 1, _rows - 1);
-        double ratio = _slowest * Math.Exp(row * LogStep) / speed, last = _columns - 1.001;
-        (double slow, double fast) = next == row ? (ratio, 0) : (1 - (1 - ratio) / Whole, (1 - ratio) / Whole);
+        int row = (int)at, down = row + 1 < _rows ? _columns : 0;
+        double ratio = _slowest * Math.Exp(row * LogStep) / speed, last = _columns - 1.001, perStep = 1 / _step;
+        (double slow, double fast) = down == 0 ? (ratio, 0) : (1 - (1 - ratio) / Whole, (1 - ratio) / Whole);
+        ReadOnlySpan<double> table = _table;
         for (int p = 0; p < counts.Length; p++)
         {
-            double place = Math.Clamp((_lasers[p] - shift - _low) / _step, 0, last);
-            int k = (int)place;
-            double[][] dim = _tables[_level[p]];
-            counts[p] = slow * Between(dim[row], k, place - k) + fast * Between(dim[next], k, place - k);
-            if (_share[p] == 0) continue;
-            double[][] bright = _tables[_level[p] + 1];
-            counts[p] += _share[p] * (slow * Between(bright[row], k, place - k) + fast * Between(bright[next], k, place - k) - counts[p]);
+            double place = Math.Clamp((_lasers[p] - shift - _low) * perStep, 0, last), share = _share[p];
+            int k = (int)place, at0 = (_level[p] * _rows + row) * _columns + k;
+            double rest = place - k, dim = slow * Between(table, at0, rest) + fast * Between(table, at0 + down, rest);
+            if (share == 0) { counts[p] = dim; continue; }
+            int at1 = at0 + _rows * _columns;
+            counts[p] = dim + share * (slow * Between(table, at1, rest) + fast * Between(table, at1 + down, rest) - dim);
         }
     }
 
     /// <summary>Difference of 1/v over a step, in units of 1/v.</summary>
     static readonly double Whole = 1 - Math.Exp(-LogStep);
 
-    static double Between(double[] row, int k, double rest) => row[k] + rest * (row[k + 1] - row[k]);
+    static double Between(ReadOnlySpan<double> table, int k, double rest) => table[k] + rest * (table[k + 1] - table[k]);
 
     /// <summary>Lines and jitter as weights on the steps of detuning; the first step, and weights from there.</summary>
     (int First, double[] Weights) Kernel(Setup setup)
@@ -96,20 +98,18 @@ sealed class ScanCounts
         return (first, weights);
     }
 
-    double[][] Rows(Setup lit, int rows, int columns, int first, double[] kernel)
+    void Rows(Setup lit, int first, double[] kernel, Span<double> rows)
     {
         var yield = new DetectionYield(lit);
-        double[] exposure = [.. Enumerable.Range(0, columns + kernel.Length).Select(k => yield.ExposureTimesSpeed(_low + (first + k) * _step))], single = new double[exposure.Length];
-        var table = new double[rows][];
-        for (int r = 0; r < rows; r++)
+        double[] exposure = [.. Enumerable.Range(0, _columns + kernel.Length).Select(k => yield.ExposureTimesSpeed(_low + (first + k) * _step))], single = new double[exposure.Length];
+        for (int r = 0; r < _rows; r++)
         {
             double speed = _slowest * Math.Exp(r * LogStep);
             for (int k = 0; k < single.Length; k++) single[k] = lit.CountsPerPhoton * DetectionYield.Photons(exposure[k] / speed, lit.Species.PhotonLimit?.Value);
-            double[] row = table[r] = new double[columns];
+            Span<double> row = rows.Slice(r * _columns, _columns);
             for (int k = 0; k < kernel.Length; k++)
-                if (kernel[k] > Negligible) TensorPrimitives.MultiplyAdd(single.AsSpan(k, columns), kernel[k], row, row);
+                if (kernel[k] > Negligible) TensorPrimitives.MultiplyAdd(single.AsSpan(k, _columns), kernel[k], row, row);
         }
-        return table;
     }
 }
 
